@@ -1,0 +1,1 @@
+"""Time scales, mean longitudes and the tide-generating potential's line table."""

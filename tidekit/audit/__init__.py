@@ -1,0 +1,1 @@
+"""One run over a whole network."""

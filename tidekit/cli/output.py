@@ -1,0 +1,51 @@
+"""What every command shares: printing tables and JSON, writing tables, finding constants and records."""
+
+from __future__ import annotations
+
+import argparse
+import json
+import math
+from collections.abc import Mapping
+from pathlib import Path
+from typing import Any
+
+import numpy as np
+import pandas as pd
+
+from tidekit.files import write_text
+
+
+def add_output_options(parser: argparse.ArgumentParser, *, table: str | None = None) -> None:
+    """Add `--json`, and `--out FILE` where the command writes a table."""
+    parser.add_argument("--json", action="store_true", help="print one JSON document and nothing else")
+    if table:
+        parser.add_argument("--out", metavar="FILE", type=Path, help=f"write {table} to FILE (CSV)")
+
+
+def jsonable(value: Any) -> Any:
+    """Turn numpy, pandas and dates into what JSON has; a number that is not finite becomes null."""
+    if isinstance(value, Mapping):
+        return {str(key): jsonable(entry) for key, entry in value.items()}
+    if isinstance(value, pd.DataFrame):
+        return jsonable(value.to_dict(orient="records"))
+    if isinstance(value, np.ndarray):
+        return jsonable(value.tolist())
+    if isinstance(value, (list, tuple)):
+        return [jsonable(entry) for entry in value]
+    if isinstance(value, np.generic):
+        return jsonable(value.item())
+    if isinstance(value, float):
+        return value if math.isfinite(value) else None
+    if isinstance(value, pd.Timestamp):
+        return value.isoformat()
+    return value if value is None or isinstance(value, (str, int, bool)) else str(value)
+
+
+def print_json(document: Mapping[str, Any]) -> None:
+    """Print one JSON document."""
+    print(json.dumps(jsonable(document), indent=2, allow_nan=False))
+
+
+def write_table(frame: pd.DataFrame, path: Path) -> None:
+    """Write a table as CSV, whole or not at all."""
+    write_text(path, frame.to_csv(index=False, lineterminator="\n"))

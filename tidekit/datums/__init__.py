@@ -1,0 +1,1 @@
+"""Observed and predicted tidal datums."""

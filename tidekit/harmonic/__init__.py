@@ -1,0 +1,1 @@
+"""The least-squares harmonic analyser."""

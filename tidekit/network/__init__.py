@@ -1,0 +1,1 @@
+"""Coast geometry, propagation along and across a coast, verdicts, faults of single gauges."""

@@ -1,0 +1,1 @@
+"""Heights at times, turning points (high and low waters) and tide tables."""

@@ -1,0 +1,1 @@
+"""Screening tests, flags, findings, clock and step detectors."""

@@ -1,0 +1,1 @@
+"""Theory of boundary-trapped waves; numpy and scipy only."""

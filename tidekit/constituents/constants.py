@@ -10,6 +10,7 @@ import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
+from tidekit.constituents.catalogue import speeds_deg_per_h
 from tidekit.errors import ConstituentError
 
 NodalConvention = Literal["exact", "mid_year"]
@@ -97,8 +98,6 @@ class HarmonicConstants:
 
     def to_frame(self) -> pd.DataFrame:
         """One row a constituent, with the columns of `constants.csv` after `gauge`."""
-        from tidekit.constituents.catalogue import speeds_deg_per_h  # noqa: PLC0415
-
         return pd.DataFrame(
             {
                 "constituent": list(self.names),

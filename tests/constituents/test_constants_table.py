@@ -46,10 +46,19 @@ def test_constants_read_back(tmp_path: Path) -> None:
         ("constituent,amplitude_m,phase_lag_deg\nM2,one,3\n", r"x\.csv:2: amplitude_m is 'one'"),
         ("# a comment\nconstituent,amplitude_m,phase_lag_deg\nM2,-1,3\n", r"x\.csv:3: amplitude_m is '-1'"),
         ("constituent,amplitude_m,phase_lag_deg\nM2,1,3\nQQ7,1,3\n", r"x\.csv:3: unknown constituent"),
-        ("constituent,amplitude_m,phase_lag_deg\nM2,1,3\nM2,1,3\n", r"x\.csv:3: M2 stands in the table twice"),
+        (
+            "constituent,amplitude_m,phase_lag_deg\nM2,1,3\nM2,1,3\n",
+            r"x\.csv:3: M2 stands in the table twice",
+        ),
         ("constituent,amplitude_m,phase_lag_deg\nM2,1\n", r"x\.csv:2: 2 cells"),
-        ("constituent,amplitude_m,phase_lag_deg,speed_deg_per_h\nM2,1,3,30\n", r"x\.csv:2: M2 has the speed 30"),
-        ("gauge,constituent,amplitude_m,phase_lag_deg\na,M2,1,3\nb,M2,1,3\n", "name a gauge; the table has a, b"),
+        (
+            "constituent,amplitude_m,phase_lag_deg,speed_deg_per_h\nM2,1,3,30\n",
+            r"x\.csv:2: M2 has the speed 30",
+        ),
+        (
+            "gauge,constituent,amplitude_m,phase_lag_deg\na,M2,1,3\nb,M2,1,3\n",
+            "name a gauge; the table has a, b",
+        ),
     ],
 )
 def test_wrong_tables_are_named(tmp_path: Path, text: str, match: str) -> None:

@@ -12,7 +12,8 @@ def test_a_sum_reads_back(text: str) -> None:
 
 
 @pytest.mark.parametrize(
-    ("text", "match"), [("", "empty make-up"), ("M2 S2", "cannot read"), ("M2 + ", "cannot read"), ("2*", "cannot read")]
+    ("text", "match"),
+    [("", "empty make-up"), ("M2 S2", "cannot read"), ("M2 + ", "cannot read"), ("2*", "cannot read")],
 )
 def test_nonsense_is_refused(text: str, match: str) -> None:
     with pytest.raises(ConstituentError, match=match):

@@ -72,7 +72,12 @@ def test_equilibrium_companions_have_the_published_ratios() -> None:
     """Ratios of Doodson's (1921) coefficients, from memory: P1/K1 .3309, K2/S2 .2721, T2/S2 .0586, nu2/N2 .1900."""
     fitted = resolvable(30 * DAY_H)
     found = {c.name: c for c in equilibrium_companions(fitted, 30 * DAY_H)}
-    for name, main, ratio in [("P1", "K1", 0.3309), ("K2", "S2", 0.2721), ("T2", "S2", 0.0586), ("nu2", "N2", 0.1900)]:
+    for name, main, ratio in [
+        ("P1", "K1", 0.3309),
+        ("K2", "S2", 0.2721),
+        ("T2", "S2", 0.0586),
+        ("nu2", "N2", 0.1900),
+    ]:
         assert found[name].from_name == main
         assert_allclose(found[name].amplitude_ratio, ratio, atol=PRINTED_RATIO)
     assert not set(found) & set(fitted)

@@ -61,8 +61,8 @@ def test_published_formulae_against_the_series(name: str) -> None:
     assert_allclose(np.rad2deg(np.angle(factor)), u, atol=SERIES_U_DEG)
 
 
-L2_SERIES = 0.012
-"""The series of L2 drops terms below 0.0156; its two published forms agree to about this."""
+L2_SERIES = 0.0156
+"""The smallest term that the series of L2 keeps."""
 
 
 def test_l2_against_its_series() -> None:

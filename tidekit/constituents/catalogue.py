@@ -23,7 +23,7 @@ from tidekit.errors import ConstituentError
 NodalRule = Literal["lines", "none", "parts"]
 """Where f and u come from: the side lines of the potential, nowhere (f = 1, u = 0), or the parts."""
 
-_COLUMNS = "name,tau,s,h,p,n_prime,p_s,phase_quarter,nodal,parts,also,source".split(",")
+_COLUMNS = ["name", "tau", "s", "h", "p", "n_prime", "p_s", "phase_quarter", "nodal", "parts", "also", "source"]
 
 
 @dataclass(frozen=True)
@@ -84,9 +84,7 @@ def _tables() -> tuple[dict[str, Constituent], dict[str, str]]:
     return ordered, bare | spellings
 
 
-def _compound(
-    name: str, parts: tuple[tuple[str, int], ...], entries: dict[str, Constituent]
-) -> Constituent:
+def _compound(name: str, parts: tuple[tuple[str, int], ...], entries: dict[str, Constituent]) -> Constituent:
     doodson = np.sum([np.multiply(entries[part].doodson, factor) for part, factor in parts], axis=0)
     quarter = sum(entries[part].phase_quarter * factor for part, factor in parts)
     numbers = cast(tuple[int, int, int, int, int, int], tuple(int(number) for number in doodson))
@@ -126,7 +124,7 @@ def resolve(name: str) -> Constituent:
     key = name.strip().upper()
     if key in spellings:
         return entries[spellings[key]]
-    if not any(sign in name for sign in "+*"):
+    if not any(sign in name for sign in "+-*"):
         message = f"unknown constituent {name!r}; see the catalogue, or write a compound as 2*M2 + S2"
         raise ConstituentError(message)
     made: dict[str, int] = {}
@@ -135,12 +133,12 @@ def resolve(name: str) -> Constituent:
         for part, inner in entry.parts or ((entry.name, 1),):
             made[part] = made.get(part, 0) + inner * factor
     parts = tuple((part, factor) for part, factor in made.items() if factor)
-    for entry in entries.values():
-        if dict(entry.parts) == dict(parts):
-            return entry
     if not parts:
         message = f"{name!r} adds up to nothing; write a compound as 2*M2 + S2"
         raise ConstituentError(message)
+    for entry in entries.values():
+        if dict(entry.parts) == dict(parts):
+            return entry
     if len(parts) == 1 and parts[0][1] == 1:
         return entries[parts[0][0]]
     compound = _compound(format_makeup(parts), parts, entries)

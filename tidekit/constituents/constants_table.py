@@ -117,10 +117,7 @@ def read_constants(
     lag_column = next(column for column in _LAG_COLUMNS if column in frame)
     amplitude = _numbers(frame, "amplitude_m", path)
     lag = _numbers(frame, lag_column, path)
-    spread = {
-        column: _numbers(frame, column, path, may_lack=True)
-        for column in ("amplitude_sd_m", "phase_lag_sd_deg")
-    }
+    spread = {column: _numbers(frame, column, path, may_lack=True) for column in ("amplitude_sd_m", "phase_lag_sd_deg")}
     level = (frame["constituent"] == MEAN_LEVEL).to_numpy()
     names = _names(frame[~level], path)
     convention = nodal or _one_of(frame, "nodal", path)

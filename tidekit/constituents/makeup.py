@@ -56,7 +56,7 @@ def format_makeup(parts: tuple[tuple[str, int], ...]) -> str:
     >>> format_makeup((("M2", 2), ("S2", 1), ("N2", -1)))
     '2*M2 + S2 - N2'
     """
-    pieces = []
+    pieces: list[str] = []
     for name, factor in parts:
         sign = "- " if factor < 0 else "+ " if pieces else ""
         pieces.append(f"{sign}{f'{abs(factor)}*' if abs(factor) != 1 else ''}{name}")

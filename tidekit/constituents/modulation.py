@@ -10,6 +10,7 @@ from __future__ import annotations
 
 from collections.abc import Callable, Sequence
 from functools import cache
+from typing import get_args
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -58,9 +59,7 @@ def arguments_rad(names: Sequence[str], t_h: ArrayLike) -> NDArray[np.float64]:
     return np.asarray(longitudes @ numbers.T + 0.5 * np.pi * quarters)
 
 
-def nodal_factors(
-    names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "exact"
-) -> NDArray[np.complex128]:
+def nodal_factors(names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "exact") -> NDArray[np.complex128]:
     """Nodal modulation f exp(iu) of constituents.
 
     Parameters
@@ -86,16 +85,14 @@ def nodal_factors(
     times = np.asarray(t_h, dtype=np.float64)
     if nodal == "exact":
         return _each_line_once(names, times, _side_line_sum)
-    if nodal == "mid_year":
-        middles, year_of = np.unique(mid_year_h(times), return_inverse=True)
-        return _each_line_once(names, middles, _published)[year_of]
-    message = f"unknown nodal convention {nodal!r}; there are 'exact' and 'mid_year'"
-    raise ConstituentError(message)
+    if nodal not in get_args(NodalConvention):
+        message = f"unknown nodal convention {nodal!r}; there are 'exact' and 'mid_year'"
+        raise ConstituentError(message)
+    middles, year_of = np.unique(mid_year_h(times), return_inverse=True)
+    return _each_line_once(names, middles, _published)[year_of]
 
 
-def carriers(
-    names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "exact"
-) -> NDArray[np.complex128]:
+def carriers(names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "exact") -> NDArray[np.complex128]:
     """Carriers f exp(i(V + u)): a height is the real part of carrier times H exp(-iG).
 
     Parameters

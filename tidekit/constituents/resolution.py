@@ -23,10 +23,10 @@ CALENDAR_YEAR_TOLERANCE = 0.99
 """Part of the synodic period that must be covered: a calendar year of 365 days then parts S2 from T2."""
 
 _WEATHER_TIDE_M = {"Sa": 0.05, "S1": 0.005}
-"""Height in the ranking of the two constituents that the ocean owes to the weather (common practice, no source)."""
+"""Ranking heights of what the ocean owes to the weather (common practice, no source). [m]"""
 
 _SHALLOW_WATER = 0.03
-"""Strength of each further interaction in a compound tide, for the ranking only (common practice, no source)."""
+"""Strength of each further interaction in a compound tide, for the ranking (common practice, no source)."""
 
 
 @dataclass(frozen=True)
@@ -108,8 +108,8 @@ def resolvable(
 ) -> tuple[str, ...]:
     """Choose constituents that a record can tell from each other and from its mean.
 
-    The strongest come first; each next one is kept if the record covers the synodic period with every one
-    kept before (times `rayleigh`), one whole period of its own, and samples it twice a cycle.
+    Those sampled less than twice a cycle are left out. The strongest come first; each next one is kept if
+    the record covers the synodic period with every one kept before and with the mean level, times `rayleigh`.
 
     Parameters
     ----------
@@ -133,26 +133,27 @@ def resolvable(
         If the record is too short for any constituent.
     """
     names = [resolve(name).name for name in (candidates or catalogue())]
+    sampled = [name for name in names if resolve(name).speed_deg_per_h * step_h < 180.0]
     reach_deg = 360.0 * rayleigh * CALENDAR_YEAR_TOLERANCE
     kept: list[str] = []
     kept_speeds: list[float] = [0.0]  # the mean level counts as a constituent of speed zero
-    for name in sorted(names, key=ranking_height_m, reverse=True):
+    for name in sorted(sampled, key=ranking_height_m, reverse=True):
         speed = resolve(name).speed_deg_per_h
-        if speed * step_h < 180.0 and all(abs(speed - other) * span_h >= reach_deg for other in kept_speeds):
+        if all(abs(speed - other) * span_h >= reach_deg for other in kept_speeds):
             kept.append(name)
             kept_speeds.append(speed)
+        elif not kept:
+            break  # shorter than a cycle of the strongest: overtides fitted without it would be nonsense
     if not kept:
         message = (
             f"the record covers {span_h:.1f} h at a step of {step_h:g} h, too short for any constituent; "
-            "at least 25 h of hourly heights are needed to fit one"
+            "a day of hourly heights is the least that fits one"
         )
         raise AnalysisError(message)
     return tuple(sorted(kept, key=lambda name: resolve(name).speed_deg_per_h))
 
 
-def equilibrium_companions(
-    fitted: Sequence[str], span_h: float, *, at_least_m: float = 0.002
-) -> tuple[Companion, ...]:
+def equilibrium_companions(fitted: Sequence[str], span_h: float, *, at_least_m: float = 0.002) -> tuple[Companion, ...]:
     """Companions of the fitted constituents by the ratios of the equilibrium tide, with equal phase lags.
 
     Parameters
@@ -168,7 +169,7 @@ def equilibrium_companions(
     -------
     tuple of Companion
         One for each line constituent of the catalogue that the record cannot part from a stronger fitted one
-        of its species; its relation is to the strongest such.
+        of its species; its relation is to the one that outweighs it most for its distance in speed.
     """
     companions = []
     for name in catalogue():
@@ -185,7 +186,7 @@ def equilibrium_companions(
             and synodic_period_h(name, other) > span_h / CALENDAR_YEAR_TOLERANCE
         ]
         if height >= at_least_m and rivals:
-            main = max(rivals, key=_equilibrium_height_m)
+            main = max(rivals, key=lambda other: _equilibrium_height_m(other) * synodic_period_h(name, other))
             ratio = height / _equilibrium_height_m(main)
             companions.append(Companion(name, main, ratio, 0.0, "equilibrium"))
     return tuple(companions)
@@ -227,8 +228,8 @@ def reference_companions(
         ]
         if entry.name not in reference.names or not mains:
             message = (
-                f"cannot infer {entry.name} from {source}: the reference must have it and a fitted constituent "
-                "of its species; leave it out or take another reference"
+                f"cannot infer {entry.name} from {source}: the reference must have it and a fitted "
+                "constituent of its species; leave it out or take another reference"
             )
             raise AnalysisError(message)
         speed = entry.speed_deg_per_h

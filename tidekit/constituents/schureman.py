@@ -90,9 +90,7 @@ SCHUREMAN_RULES: dict[str, Callable[[_MoonsOrbit], NDArray[np.complex128]]] = {
     "Mm": lambda o: _polar((2 / 3 - np.sin(o.inclination) ** 2) / 0.5021, np.zeros_like(o.nu)),
     "Mf": lambda o: _polar(np.sin(o.inclination) ** 2 / 0.1578, -2 * o.xi),
     "J1": lambda o: _polar(np.sin(2 * o.inclination) / 0.7214, -o.nu),
-    "OO1": lambda o: _polar(
-        np.sin(o.inclination) * np.sin(o.inclination / 2) ** 2 / 0.0164, -2 * o.xi - o.nu
-    ),
+    "OO1": lambda o: _polar(np.sin(o.inclination) * np.sin(o.inclination / 2) ** 2 / 0.0164, -2 * o.xi - o.nu),
     "M3": lambda o: _polar(np.cos(o.inclination / 2) ** 6 / 0.8758, 3 * o.xi - 3 * o.nu),
     "K1": _k1,
     "K2": _k2,

@@ -1,4 +1,4 @@
-"""The tide as slow phasors over short blocks of time: one matrix product for grids, and derivatives of any order.
+"""The tide as slow phasors over blocks of days: one matrix product for grids, derivatives of any order.
 
 Within a block of days the factor f exp(i(V + u)) of a constituent turns at its own speed but for a part that
 changes over years. So in a block that begins at t_0, with tau = t - t_0::
@@ -11,6 +11,7 @@ where `first` is exact at the block's start and `slope` makes it exact at its en
 from __future__ import annotations
 
 from dataclasses import dataclass
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import ArrayLike, NDArray
@@ -23,8 +24,8 @@ from tidekit.constituents.modulation import arguments_rad, carriers, nodal_facto
 _Array = NDArray[np.float64]
 
 BLOCK_H = 240.0
-"""Longest block. A phasor that turns with twice the Moon's perigee, the fastest modulation there is, leaves its
-chord by (240 h x 1.6e-4 rad/h)^2 / 8 = 2e-4 of the side line: micrometres on the constituents that have one. [h]"""
+"""Longest block. A side line at twice the Moon's perigee, the fastest modulation there is, strays from its
+chord by (240 h x 1.6e-4 rad/h)^2 / 8 = 2e-4 of itself: micrometres where there is one. [h]"""
 
 _POINTS_AT_ONCE = 8192
 """Scattered times taken together: bounds the memory to some 10 MB for 70 constituents."""
@@ -53,7 +54,7 @@ class PhasorBlocks:
             constant = constant + order * (1j * self.omega) ** (order - 1) * self.slope
         return constant, turn * self.slope
 
-    def on_grid(self, tau_h: _Array, *, order: int = 0) -> _Array:
+    def on_grid(self, tau_h: NDArray[np.float64], *, order: int = 0) -> _Array:
         """Tide, or a derivative of it, at the same times after every block's start.
 
         Parameters
@@ -119,8 +120,8 @@ def phasor_blocks(
     start_h, end_h : array-like, shape (b,)
         Where each block starts and stops, at most `BLOCK_H` apart. [UTC hours since 2000-01-01 00:00]
     year_at_h : float, optional
-        A time in the year whose factors all blocks take under the mid-year convention; each block's own middle
-        by default. [hours, likewise]
+        A time in the year whose factors all blocks take under the mid-year convention; each block's own
+        middle by default. [hours, likewise]
 
     Returns
     -------
@@ -190,6 +191,6 @@ def equal_blocks(constants: HarmonicConstants, start_h: float, end_h: float) -> 
         The first starts at `start_h`, the last ends at `end_h`.
     """
     bounds = smooth_stretches(start_h, end_h, constants.nodal)
-    starts = [np.arange(a, b, BLOCK_H) for a, b in zip(bounds[:-1], bounds[1:], strict=True)]
+    starts = [np.arange(a, b, BLOCK_H) for a, b in pairwise(bounds)]
     start = np.concatenate(starts)
     return phasor_blocks(constants, start, np.append(start[1:], end_h))

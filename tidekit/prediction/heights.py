@@ -23,9 +23,7 @@ _SAMPLES_A_BLOCK = 4096
 _BLOCKS_AT_ONCE = 256
 
 
-def predict_heights(
-    constants: HarmonicConstants, t_h: ArrayLike, *, nodal: NodalConvention | None = None
-) -> _Array:
+def predict_heights(constants: HarmonicConstants, t_h: ArrayLike, *, nodal: NodalConvention | None = None) -> _Array:
     """Predict the height of the tide.
 
     Parameters
@@ -33,7 +31,8 @@ def predict_heights(
     constants : HarmonicConstants
         Of k constituents.
     t_h : array-like, shape (n,)
-        Times, in any order; a regular grid, with or without holes, is fastest. [UTC hours since 2000-01-01 00:00]
+        Times, in any order; a regular grid, with or without holes, is fastest.
+        [UTC hours since 2000-01-01 00:00]
     nodal : {"exact", "mid_year"}, optional
         Nodal convention; the constants' own by default.
 
@@ -50,9 +49,7 @@ def predict_heights(
     return constants.mean_level_m + _derivative(constants, t_h, nodal, order=0)
 
 
-def rate_m_per_h(
-    constants: HarmonicConstants, t_h: ArrayLike, *, nodal: NodalConvention | None = None
-) -> _Array:
+def rate_m_per_h(constants: HarmonicConstants, t_h: ArrayLike, *, nodal: NodalConvention | None = None) -> _Array:
     """Predict the rate of rise of the tide.
 
     Parameters
@@ -104,9 +101,7 @@ def acceleration_m_per_h2(
     return _derivative(constants, t_h, nodal, order=2)
 
 
-def _derivative(
-    constants: HarmonicConstants, t_h: ArrayLike, nodal: NodalConvention | None, *, order: int
-) -> _Array:
+def _derivative(constants: HarmonicConstants, t_h: ArrayLike, nodal: NodalConvention | None, *, order: int) -> _Array:
     times = np.asarray(t_h, dtype=np.float64).ravel()
     if not np.all(np.isfinite(times)):
         message = f"{np.sum(~np.isfinite(times))} of {times.size} times are not finite; leave them out"
@@ -157,7 +152,7 @@ def _grid_of(times: _Array) -> tuple[float, NDArray[np.intp]] | None:
 
 def _on_grid(constants: HarmonicConstants, start: float, step: float, count: int, order: int) -> _Array:
     width = int(np.clip(BLOCK_H / step, 1, _SAMPLES_A_BLOCK))
-    tau = step * np.arange(width)
+    tau = step * np.arange(width, dtype=np.float64)
     starts = start + step * width * np.arange(-(-count // width))
     parts = []
     for begin in range(0, len(starts), _BLOCKS_AT_ONCE):

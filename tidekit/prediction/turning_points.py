@@ -19,8 +19,8 @@ _Array = NDArray[np.float64]
 _Indices = NDArray[np.intp]
 
 SAMPLES_A_CYCLE = 12
-"""Samples of the rate in a cycle of the fastest constituent. Two crossings between two samples are found all the
-same, from the rate's own turning point between them, unless that has a second one within a twelfth of a cycle."""
+"""Samples of the rate in a cycle of the fastest constituent. Two crossings between two samples are found all
+the same, from the rate's own turning point between them, unless it turns twice in a twelfth of a cycle."""
 TIME_TOLERANCE_H = 1e-6
 """Turning points are refined until a step is below this: 4 ms. [h]"""
 _STEPS_MOST = 60
@@ -49,9 +49,7 @@ class TurningPoints:
 
     def where(self, chosen: NDArray[np.bool_] | _Indices) -> TurningPoints:
         """Give some of them, by mask or by place."""
-        return TurningPoints(
-            t_h=self.t_h[chosen], height_m=self.height_m[chosen], is_high=self.is_high[chosen]
-        )
+        return TurningPoints(t_h=self.t_h[chosen], height_m=self.height_m[chosen], is_high=self.is_high[chosen])
 
     def to_frame(self) -> pd.DataFrame:
         """One row a turning point: `time` (UTC), `height_m` and `kind` (`high` or `low`)."""
@@ -86,11 +84,11 @@ def turning_points(constants: HarmonicConstants, start_h: float, end_h: float) -
 
     Notes
     -----
-    The rate is sampled `SAMPLES_A_CYCLE` times in a cycle of the fastest constituent. A change of sign brackets a
-    root; so does, between two samples of one sign, a turning point of the rate that lies on the other side of
-    zero. Newton's method then runs on all brackets at once and bisects wherever a step would leave one. Where
-    two blocks meet with rates of opposite signs (as they may at New Year under the mid-year convention, whose
-    height has a step of millimetres there) the turn lies at the seam.
+    The rate is sampled `SAMPLES_A_CYCLE` times in a cycle of the fastest constituent. A change of sign
+    brackets a root; so does, between two samples of one sign, a turning point of the rate that lies on the
+    other side of zero. Newton's method then runs on all brackets at once and bisects wherever a step would
+    leave one. Where two blocks meet with rates of opposite signs (as they may at New Year under the mid-year
+    convention, whose height has a step of millimetres there) the turn lies at the seam.
     """
     if not (np.isfinite(start_h) and np.isfinite(end_h) and end_h > start_h):
         message = f"the period runs from {start_h} to {end_h} h; it must end after its start"
@@ -105,9 +103,7 @@ def turning_points(constants: HarmonicConstants, start_h: float, end_h: float) -
     falling = np.concatenate([falling, seam_falling])
     height = constants.mean_level_m + blocks.at(block, tau)
     order = np.argsort(blocks.start_h[block] + tau, kind="stable")
-    return TurningPoints(
-        t_h=(blocks.start_h[block] + tau)[order], height_m=height[order], is_high=falling[order]
-    )
+    return TurningPoints(t_h=(blocks.start_h[block] + tau)[order], height_m=height[order], is_high=falling[order])
 
 
 def _turns_inside(blocks: PhasorBlocks) -> tuple[_Indices, _Array, NDArray[np.bool_]]:

@@ -26,8 +26,6 @@ def test_the_catalogue_is_in_order_of_speed() -> None:
         ("LAMBDA2", "lambda2"),
         ("RHO", "rho1"),
         ("SSA", "Ssa"),
-    ]
-    + [
         ("m2", "M2"),
         ("MSF", "MSf"),
         ("2(ms)8", "2(MS)8"),

@@ -117,12 +117,15 @@ def carriers(names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "
     return np.asarray(nodal_factors(names, t_h, nodal=nodal) * np.exp(1j * arguments_rad(names, t_h)))
 
 
+def year_start_h(t_h: ArrayLike, *, years_on: int = 0) -> NDArray[np.float64]:
+    """Start of the calendar year (UTC) of each time, or of a later one. [UTC hours since 2000-01-01 00:00]"""
+    years = datetime64_from_hours(np.asarray(t_h, dtype=np.float64)).astype("datetime64[Y]") + years_on
+    return hours_from_datetime64(years.astype("datetime64[us]"))
+
+
 def mid_year_h(t_h: ArrayLike) -> NDArray[np.float64]:
     """Middle of the calendar year (UTC) of each time, shape (n,). [UTC hours since 2000-01-01 00:00]"""
-    years = datetime64_from_hours(np.asarray(t_h, dtype=np.float64)).astype("datetime64[Y]")
-    start = hours_from_datetime64(years.astype("datetime64[us]"))
-    end = hours_from_datetime64((years + 1).astype("datetime64[us]"))
-    return np.asarray(0.5 * (start + end))
+    return np.asarray(0.5 * (year_start_h(t_h) + year_start_h(t_h, years_on=1)))
 
 
 def side_lines(name: str) -> tuple[NDArray[np.int64], NDArray[np.float64], NDArray[np.float64]]:
@@ -177,9 +180,15 @@ def _side_line_sum(entry: Constituent, t_h: NDArray[np.float64]) -> NDArray[np.c
 
 
 def _published(entry: Constituent, t_h: NDArray[np.float64]) -> NDArray[np.complex128]:
-    if entry.name in SCHUREMAN_RULES:
-        return schureman_factors(entry.name, t_h)
-    return _side_line_sum(entry, t_h)
+    if entry.name not in SCHUREMAN_RULES:
+        return _side_line_sum(entry, t_h)
+    factor = schureman_factors(entry.name, t_h)
+    if entry.name == "M1":
+        # The published V of M1 lacks p, and its speed has p's rate: agencies run it on from the start of the
+        # year, so half a year of p (20 degrees) is theirs that a p held at mid-year would take away.
+        perigee = mean_longitudes_rad(np.concatenate([t_h, year_start_h(t_h)]))[:, 3]
+        factor = factor * np.exp(1j * (perigee[: len(t_h)] - perigee[len(t_h) :]))
+    return factor
 
 
 def _each_line_once(

@@ -90,9 +90,7 @@ def turning_points(constants: HarmonicConstants, start_h: float, end_h: float) -
     leave one. Where two blocks meet with rates of opposite signs (as they may at New Year under the mid-year
     convention, whose height has a step of millimetres there) the turn lies at the seam.
     """
-    if not (np.isfinite(start_h) and np.isfinite(end_h) and end_h > start_h):
-        message = f"the period runs from {start_h} to {end_h} h; it must end after its start"
-        raise AnalysisError(message)
+    check_period(start_h, end_h)
     if not np.any(constants.amplitude_m > 0.0):
         return TurningPoints(t_h=np.empty(0), height_m=np.empty(0), is_high=np.empty(0, dtype=np.bool_))
     blocks = equal_blocks(constants, start_h, end_h)
@@ -104,6 +102,19 @@ def turning_points(constants: HarmonicConstants, start_h: float, end_h: float) -
     height = constants.mean_level_m + blocks.at(block, tau)
     order = np.argsort(blocks.start_h[block] + tau, kind="stable")
     return TurningPoints(t_h=(blocks.start_h[block] + tau)[order], height_m=height[order], is_high=falling[order])
+
+
+def check_period(start_h: float, end_h: float) -> None:
+    """Refuse a period that does not end after its start.
+
+    Raises
+    ------
+    AnalysisError
+        If it does not.
+    """
+    if not (np.isfinite(start_h) and np.isfinite(end_h) and end_h > start_h):
+        message = f"the period runs from {start_h} to {end_h} h; it must end after its start"
+        raise AnalysisError(message)
 
 
 def _turns_inside(blocks: PhasorBlocks) -> tuple[_Indices, _Array, NDArray[np.bool_]]:

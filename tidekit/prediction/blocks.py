@@ -35,6 +35,9 @@ _POINTS_AT_ONCE = 8192
 class PhasorBlocks:
     """Slow phasors of k constituents over b blocks; each block holds from its start to its end."""
 
+    names: tuple[str, ...]
+    """The constituents, those without amplitude left out."""
+
     start_h: _Array
     """Starts of the blocks, increasing, shape (b,). [UTC hours since 2000-01-01 00:00]"""
     end_h: _Array
@@ -102,6 +105,12 @@ class PhasorBlocks:
             result[part] = np.sum(phasor.real * np.cos(angle) - phasor.imag * np.sin(angle), axis=1)
         return result
 
+    def terms(self, t_h: _Array) -> NDArray[np.complex128]:
+        """Each constituent's H f exp(i(V + u - G)) at times (n,), whose real part is its height, (n, k). [m]"""
+        block, tau = self.locate(t_h)
+        column = tau[:, np.newaxis]
+        return np.asarray((self.first[block] + self.slope[block] * column) * np.exp(1j * column * self.omega))
+
     def locate(self, t_h: _Array) -> tuple[NDArray[np.intp], _Array]:
         """Block of each time, and the time after that block's start; both (n,)."""
         block = np.clip(np.searchsorted(self.start_h, t_h, side="right") - 1, 0, None)
@@ -144,6 +153,7 @@ def phasor_blocks(
     length = (end - start)[:, np.newaxis]
     turned_back = last * np.exp(-1j * omega * length)
     return PhasorBlocks(
+        names=tuple(names),
         start_h=start,
         end_h=end,
         omega=omega,

@@ -76,6 +76,20 @@ def sum_in_words(name: str) -> str:
     return "Z0" + "".join(f" {'+' if sign > 0 else '-'} {term}" for term, sign in SUMS[name].items())
 
 
+def mixture_in_words(name: str) -> str:
+    """Make-up of a row of `MIXTURES`, for people.
+
+    Examples
+    --------
+    >>> mixture_in_words("MTL"), mixture_in_words("GT")
+    ('half of MHW + MLW', 'MHHW - MLLW')
+    """
+    parts = MIXTURES[name]
+    sum_ = "".join(f" {'+' if factor > 0 else '-'} {part}" for part, factor in parts.items())
+    halved = all(abs(factor) == 0.5 for factor in parts.values())
+    return ("half of " if halved else "") + sum_.removeprefix(" + ")
+
+
 def form_number(constants: HarmonicConstants) -> float:
     """Form number (K1 + O1) / (M2 + S2); a constituent that is lacking counts as none, NaN without any.
 

@@ -10,7 +10,15 @@ from numpy.typing import NDArray
 
 from tidekit.astronomy.timescales import datetime64_from_hours, hours_from_datetime64
 from tidekit.constituents.constants import HarmonicConstants
-from tidekit.datums.formulae import MIXTURES, SUMS, datum_of_constants, form_number, sum_in_words, tide_type
+from tidekit.datums.formulae import (
+    MIXTURES,
+    SUMS,
+    datum_of_constants,
+    form_number,
+    mixture_in_words,
+    sum_in_words,
+    tide_type,
+)
 from tidekit.datums.table import RANGES, DatumTable
 from tidekit.errors import AnalysisError
 from tidekit.prediction.blocks import equal_blocks
@@ -146,11 +154,7 @@ def _spread_of_parameters(constants: HarmonicConstants) -> _Array:
 
 
 def _method(name: str, years: tuple[int, int]) -> str:
-    words = _IN_WORDS.get(name) or " ".join(
-        f"{'+' if factor > 0 else '-'} {'half ' if abs(factor) < 1 else ''}{part}"
-        for part, factor in MIXTURES[name].items()
-    ).removeprefix("+ ")
-    return f"predicted {years[0]}-{years[1]}: {words}"
+    return f"predicted {years[0]}-{years[1]}: {_IN_WORDS.get(name) or mixture_in_words(name)}"
 
 
 def _table(

@@ -47,32 +47,49 @@ def tidal_day_kinds(points: TurningPoints) -> NDArray[np.str_]:
     return kinds
 
 
-def tidal_day_numbers(t_h: NDArray[np.float64]) -> NDArray[np.int64]:
-    """Tidal day of each high (or of each low), counted from an edge that is clear of them.
+def tidal_day_edge_h(t_h: NDArray[np.float64]) -> float:
+    """Find where tidal days should start so that their edges are clear of the waters of one kind.
 
     Parameters
     ----------
     t_h : ndarray, shape (n,)
-        Times of waters of one kind. [h]
+        Times of the highs, or of the lows. [h]
+
+    Returns
+    -------
+    float
+        One edge; the others lie whole tidal days from it. [h, likewise]
+    """
+    if len(t_h) == 0:
+        return 0.0
+    edges = np.arange(0.0, TIDAL_DAY_H, 0.25)
+    half = 0.5 * TIDAL_DAY_H
+    phase = np.mod(t_h, TIDAL_DAY_H)[:, np.newaxis]
+    distance = np.abs(np.mod(phase - edges + half, TIDAL_DAY_H) - half)
+    return float(edges[np.argmax(np.percentile(distance, _CLEARANCE_PERCENT, axis=0))])
+
+
+def tidal_day_numbers(t_h: NDArray[np.float64], edge_h: float) -> NDArray[np.int64]:
+    """Tidal day of each time.
+
+    Parameters
+    ----------
+    t_h : ndarray, shape (n,)
+        Times. [h]
+    edge_h : float
+        Start of a tidal day. [h, likewise]
 
     Returns
     -------
     ndarray of int, shape (n,)
-        Number of the window of `TIDAL_DAY_H`.
+        Tidal days since that one.
     """
-    if len(t_h) == 0:
-        return np.empty(0, dtype=np.int64)
-    phase = np.mod(t_h, TIDAL_DAY_H)
-    edges = np.arange(0.0, TIDAL_DAY_H, 0.25)
-    half = 0.5 * TIDAL_DAY_H
-    distance = np.abs(np.mod(phase[:, np.newaxis] - edges + half, TIDAL_DAY_H) - half)
-    clearance = np.percentile(distance, _CLEARANCE_PERCENT, axis=0)
-    return np.asarray(np.floor((t_h - edges[np.argmax(clearance)]) / TIDAL_DAY_H), dtype=np.int64)
+    return np.asarray(np.floor((t_h - edge_h) / TIDAL_DAY_H), dtype=np.int64)
 
 
 def _foremost(t_h: NDArray[np.float64], reach_m: NDArray[np.float64]) -> NDArray[np.intp]:
     """Places of the waters that reach farthest in their tidal day."""
-    _, day = np.unique(tidal_day_numbers(t_h), return_inverse=True)
+    _, day = np.unique(tidal_day_numbers(t_h, tidal_day_edge_h(t_h)), return_inverse=True)
     order = np.lexsort((-reach_m, day))
     first = order[np.flatnonzero(np.diff(day[order], prepend=-1))]
     apart = np.abs(t_h - t_h[first][day]) > _OWN_DAY_H

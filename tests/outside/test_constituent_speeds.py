@@ -8,7 +8,7 @@ from numpy.testing import assert_allclose
 
 from tidekit.constituents.catalogue import resolve
 
-ROWS = list(csv.DictReader((Path(__file__).parent / "constituent_speeds.csv").open(encoding="utf-8")))
+ROWS = list(csv.DictReader((Path(__file__).parent / "constituent_speeds.csv").read_text("utf-8").splitlines()))
 SPEED_TOLERANCE_DEG_PER_H = 2e-7
 """Published speeds have seven decimals and an epoch of 1900; 2e-7 deg/h is 0.002 degrees a year."""
 

@@ -71,11 +71,27 @@ def mean_longitudes_rad(t_h: ArrayLike) -> NDArray[np.float64]:
     """
     times = np.asarray(t_h, dtype=np.float64)
     centuries = julian_centuries_tt(times)
-    slow = polynomial.polyval(centuries, _SLOW).T
+    slow = slow_longitudes_rad(centuries)
     days = (times - 12.0) / 24.0
     rotation = 2 * np.pi * (_ROTATION_AT_EPOCH + days + _ROTATION_EXCESS_PER_DAY * days)
     sidereal = rotation + polynomial.polyval(centuries, _SIDEREAL)
     return np.column_stack([sidereal - slow[:, 0] - np.pi, slow])
+
+
+def slow_longitudes_rad(centuries_tt: ArrayLike) -> NDArray[np.float64]:
+    """Mean longitudes s, h, p, N' and p_s, which need no clock on Earth.
+
+    Parameters
+    ----------
+    centuries_tt : array-like, shape (n,)
+        Terrestrial Time. [Julian centuries since J2000.0]
+
+    Returns
+    -------
+    ndarray, shape (n, 5)
+        Not wrapped. [radians]
+    """
+    return np.asarray(polynomial.polyval(np.asarray(centuries_tt, dtype=np.float64), _SLOW).T)
 
 
 def rates_deg_per_h() -> NDArray[np.float64]:

@@ -17,10 +17,11 @@ from tidekit.prediction.blocks import PhasorBlocks, equal_blocks
 
 _Array = NDArray[np.float64]
 _Indices = NDArray[np.intp]
+_Mask = NDArray[np.bool_]
 
 SAMPLES_A_CYCLE = 12
-"""Samples of the rate in a cycle of the fastest constituent. Two crossings between two samples are found all
-the same, from the rate's own turning point between them, unless it turns twice in a twelfth of a cycle."""
+"""Samples of the rate in a cycle of the fastest constituent. Two or three crossings between two samples are found
+all the same, unless the rate's second derivative turns there twice."""
 TIME_TOLERANCE_H = 1e-6
 """Turning points are refined until a step is below this: 4 ms. [h]"""
 _STEPS_MOST = 60
@@ -84,11 +85,12 @@ def turning_points(constants: HarmonicConstants, start_h: float, end_h: float) -
 
     Notes
     -----
-    The rate is sampled `SAMPLES_A_CYCLE` times in a cycle of the fastest constituent. A change of sign
-    brackets a root; so does, between two samples of one sign, a turning point of the rate that lies on the
-    other side of zero. Newton's method then runs on all brackets at once and bisects wherever a step would
-    leave one. Where two blocks meet with rates of opposite signs (as they may at New Year under the mid-year
-    convention, whose height has a step of millimetres there) the turn lies at the seam.
+    The rate is sampled `SAMPLES_A_CYCLE` times in a cycle of the fastest constituent. A change of sign brackets a
+    root. Where the rate or its derivative heads for zero from both ends of an interval, the rate's own turning
+    points split it first, so that a double water that is just being born is not missed. Newton's method then runs
+    on all brackets at once and bisects wherever a step would leave one. Where two blocks meet with rates of
+    opposite signs (as they may at New Year under the mid-year convention, whose height has a step of millimetres
+    there) the turn lies at the seam.
     """
     check_period(start_h, end_h)
     if not np.any(constants.amplitude_m > 0.0):
@@ -117,43 +119,75 @@ def check_period(start_h: float, end_h: float) -> None:
         raise AnalysisError(message)
 
 
-def _turns_inside(blocks: PhasorBlocks) -> tuple[_Indices, _Array, NDArray[np.bool_]]:
+def _turns_inside(blocks: PhasorBlocks) -> tuple[_Indices, _Array, _Mask]:
     """Block, time after its start, and whether the rate falls through zero, of each turn inside a block."""
     fastest_cycle_h = 2 * np.pi / blocks.omega.max()
     length = float(np.max(blocks.end_h - blocks.start_h))
     tau = np.linspace(0.0, length, 1 + int(np.ceil(length * SAMPLES_A_CYCLE / fastest_cycle_h)))
     rate = blocks.on_grid(tau, order=1)
-    block, column = np.nonzero((rate[:, :-1] >= 0.0) != (rate[:, 1:] >= 0.0))
-    brackets = [(block, tau[column], tau[column + 1], rate[block, column] >= 0.0)]
-    brackets += _hidden_pairs(blocks, tau, rate)
-    block = np.concatenate([b[0] for b in brackets])
-    low, high = np.concatenate([b[1] for b in brackets]), np.concatenate([b[2] for b in brackets])
-    falling = np.concatenate([b[3] for b in brackets])
+    block, column, split = _splits(blocks, tau, rate)
+    plain = (rate[:, :-1] >= 0.0) != (rate[:, 1:] >= 0.0)
+    plain[block, column] = False
+    found = [_plain_brackets(plain, tau, rate), _split_brackets(blocks, tau, block, column, split)]
+    block, low, high, falling = (np.concatenate(parts) for parts in zip(*found, strict=True))
     root = _crossings(blocks, block, low, high, falling, order=1)
     inside = root < (blocks.end_h - blocks.start_h)[block]
     return block[inside], root[inside], falling[inside]
 
 
-def _hidden_pairs(
-    blocks: PhasorBlocks, tau: _Array, rate: _Array
-) -> list[tuple[_Indices, _Array, _Array, NDArray[np.bool_]]]:
-    """Brackets of two crossings that lie between two samples of one sign.
+def _splits(blocks: PhasorBlocks, tau: _Array, rate: _Array) -> tuple[_Indices, _Indices, _Array]:
+    """Times that part the crossings of the rate where more than one may lie between two samples.
 
-    The rate heads for zero at both samples, so it turns between them; the turn may lie beyond zero.
+    They are the rate's own turning points: one where the rate heads for zero at two samples of one sign, two
+    where its derivative does.
     """
-    change = blocks.on_grid(tau, order=2)
-    above, below = rate >= 0.0, rate < 0.0
-    dips = above[:, :-1] & above[:, 1:] & (change[:, :-1] < 0.0) & (change[:, 1:] > 0.0)
-    rises = below[:, :-1] & below[:, 1:] & (change[:, :-1] > 0.0) & (change[:, 1:] < 0.0)
-    block, column = np.nonzero(dips | rises)
-    low, high, dip = tau[column], tau[column + 1], dips[block, column]
-    turn = _crossings(blocks, block, low, high, ~dip, order=2)
-    beyond = (blocks.at(block, turn, order=1) < 0.0) == dip
-    block, low, turn, high, dip = block[beyond], low[beyond], turn[beyond], high[beyond], dip[beyond]
-    return [(block, low, turn, dip), (block, turn, high, ~dip)]
+    change, jerk = blocks.on_grid(tau, order=2), blocks.on_grid(tau, order=3)
+    block, column, down = _heading_for_zero(rate, change)
+    single = _crossings(blocks, block, tau[column], tau[column + 1], ~down, order=2)
+    block_2, column_2, down_2 = _heading_for_zero(change, jerk)
+    low, high = tau[column_2], tau[column_2 + 1]
+    turn = _crossings(blocks, block_2, low, high, ~down_2, order=3)
+    beyond = (blocks.at(block_2, turn, order=2) < 0.0) == down_2
+    block_2, column_2, down_2 = block_2[beyond], column_2[beyond], down_2[beyond]
+    earlier = _crossings(blocks, block_2, low[beyond], turn[beyond], down_2, order=2)
+    later = _crossings(blocks, block_2, turn[beyond], high[beyond], ~down_2, order=2)
+    return (
+        np.concatenate([block, block_2, block_2]),
+        np.concatenate([column, column_2, column_2]),
+        np.concatenate([single, earlier, later]),
+    )
 
 
-def _turns_at_seams(blocks: PhasorBlocks) -> tuple[_Indices, NDArray[np.bool_]]:
+def _heading_for_zero(value: _Array, slope: _Array) -> tuple[_Indices, _Indices, _Mask]:
+    """Block and column of the intervals of one sign that head for zero from both ends, and whether downward."""
+    above, down = value >= 0.0, slope < 0.0
+    one_sign = above[:, :-1] == above[:, 1:]
+    heading = (above[:, :-1] == down[:, :-1]) & (above[:, 1:] != down[:, 1:])
+    block, column = np.nonzero(one_sign & heading)
+    return block, column, above[block, column]
+
+
+def _plain_brackets(changes: _Mask, tau: _Array, rate: _Array) -> tuple[_Indices, _Array, _Array, _Mask]:
+    block, column = np.nonzero(changes)
+    return block, tau[column], tau[column + 1], rate[block, column] >= 0.0
+
+
+def _split_brackets(
+    blocks: PhasorBlocks, tau: _Array, block: _Indices, column: _Indices, split: _Array
+) -> tuple[_Indices, _Array, _Array, _Mask]:
+    """Brackets between the ends of the given intervals and their splits."""
+    interval, first = np.unique(block * len(tau) + column, return_index=True)
+    ends = np.concatenate([tau[column[first]], tau[column[first] + 1]])
+    key = np.concatenate([block * len(tau) + column, interval, interval])
+    time = np.concatenate([split, ends])
+    order = np.lexsort((time, key))
+    key, time = key[order], time[order]
+    above = blocks.at(key // len(tau), time, order=1) >= 0.0
+    place = np.flatnonzero((key[:-1] == key[1:]) & (above[:-1] != above[1:]))
+    return key[place] // len(tau), time[place], time[place + 1], above[place]
+
+
+def _turns_at_seams(blocks: PhasorBlocks) -> tuple[_Indices, _Mask]:
     """Blocks at whose start the rate jumps through zero, and whether it falls."""
     later = np.arange(1, len(blocks.start_h))
     before = blocks.at(later - 1, (blocks.end_h - blocks.start_h)[:-1], order=1) >= 0.0
@@ -166,7 +200,7 @@ def _crossings(
     block: _Indices,
     low: _Array,
     high: _Array,
-    falling: NDArray[np.bool_],
+    falling: _Mask,
     *,
     order: int,
 ) -> _Array:

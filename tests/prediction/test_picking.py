@@ -1,5 +1,7 @@
 """The picking rule: small cases by hand, and the one-at-a-time version as the oracle."""
 
+from itertools import pairwise
+
 import numpy as np
 import pytest
 
@@ -41,8 +43,8 @@ def one_at_a_time(points: TurningPoints) -> TurningPoints:
     """The rule in its slow form: the least near pair, or the lesser one beside it, until none is near."""
     place = list(range(len(points)))
     while len(place) > 1:
-        span = [abs(points.height_m[b] - points.height_m[a]) for a, b in zip(place[:-1], place[1:], strict=True)]
-        wait = [points.t_h[b] - points.t_h[a] for a, b in zip(place[:-1], place[1:], strict=True)]
+        span = [abs(points.height_m[b] - points.height_m[a]) for a, b in pairwise(place)]
+        wait = [points.t_h[b] - points.t_h[a] for a, b in pairwise(place)]
         near = [i for i in range(len(span)) if span[i] < LEAST_RANGE_M or wait[i] < LEAST_INTERVAL_H]
         if not near:
             break

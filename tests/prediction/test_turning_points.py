@@ -55,7 +55,7 @@ def test_one_constituent_in_closed_form() -> None:
 
 
 def test_two_constituents_in_closed_form() -> None:
-    """cos x + a cos 2x turns at x = 0, pi and, where a > 1/4, also where cos x = -1 / (4a).
+    """The sum cos x + a cos 2x turns at x = 0, pi and, where a > 1/4, also where cos x = -1 / (4a).
 
     S2 and S4 (its double, by make-up 2*S2) of zero lag with a = 1/2: double low waters of height -3/4 at
     cos x = -1/2, that is 4 h and 8 h after high water, about a high of -1/2 at 6 h.

@@ -29,6 +29,11 @@ _SHALLOW_WATER = 0.03
 """Strength of each further interaction in a compound tide, for the ranking (common practice, no source)."""
 
 
+RELATION_SD = 0.1
+"""Relative standard deviation of an inferred relation, of the ratio and in radians of the lag difference: how far
+the ocean's answer changes within a group of close constituents (common practice, no source)."""
+
+
 @dataclass(frozen=True)
 class Companion:
     """A constituent too close to another to be fitted, tied to it by a known relation."""
@@ -43,6 +48,11 @@ class Companion:
     """Its phase lag less the fitted one's. [degrees]"""
     source: str
     """`equilibrium`, or the gauge whose constants gave the relation."""
+
+    @property
+    def ratio_to_main(self) -> complex:
+        """Phasor over the fitted constituent's phasor."""
+        return complex(self.amplitude_ratio * np.exp(-1j * np.deg2rad(self.lag_difference_deg)))
 
 
 @cache

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 import numpy as np
 import scipy.stats
@@ -197,7 +198,7 @@ def _tie(fitted: Sequence[str], companions: Sequence[Companion]) -> tuple[tuple[
 def _close_pairs(fitted: Sequence[str], span_h: float) -> tuple[tuple[str, str, float], ...]:
     """Neighbours in speed with less than one cycle of relative phase in the record."""
     ordered = sorted(fitted, key=lambda name: resolve(name).speed_deg_per_h)
-    pairs = [(a, b, span_h / synodic_period_h(a, b)) for a, b in zip(ordered, ordered[1:], strict=False)]
+    pairs = [(a, b, span_h / synodic_period_h(a, b)) for a, b in pairwise(ordered)]
     return tuple(pair for pair in pairs if pair[2] < CALENDAR_YEAR_TOLERANCE)
 
 

@@ -169,7 +169,7 @@ class GridBasis:
 
     @property
     def _columns(self) -> int:
-        return self.edges.shape[1] // 2
+        return int(self.edges.shape[1]) // 2
 
     def _fold(self, matrix: Complex) -> Complex:
         """Add the four quarters of a (2k, 2k) matrix: both edges make one column."""
@@ -187,9 +187,8 @@ class GridBasis:
     def gram(self) -> tuple[Complex, Complex]:
         """See `Basis.gram`. Each block is taken whole less its missing rows, or by its rows: whichever are fewer."""
         length = len(self.offsets)
-        present = np.zeros(len(self.edges) * length, dtype=bool)
-        present[self.index] = True
-        present = present.reshape(len(self.edges), length)
+        present = np.zeros((len(self.edges), length), dtype=np.bool_)
+        present.ravel()[self.index] = True
         whole = present.sum(axis=1) * 2 > length
         edges = self.edges[whole]
         hermitian = self._fold((self.offsets.conj().T @ self.offsets) * (edges.conj().T @ edges))

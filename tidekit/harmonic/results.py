@@ -9,6 +9,7 @@ import pandas as pd
 from numpy.typing import ArrayLike, NDArray
 
 from tidekit.astronomy.timescales import datetime64_from_hours
+from tidekit.constituents.catalogue import speeds_deg_per_h
 from tidekit.constituents.constants import HarmonicConstants
 from tidekit.harmonic.basis import basis_for
 
@@ -113,11 +114,13 @@ class HarmonicFit:
             f"{'':<9}{'deg/h':>13}{'m':>12}{'m':>9}{'deg UTC':>12}{'deg':>9}",
             "-" * width,
         ]
-        for row in constants.to_frame().itertuples(index=False):
-            spread = f"{row.phase_lag_sd_deg:.2f}" if np.isfinite(row.phase_lag_sd_deg) else "-"
+        speeds = speeds_deg_per_h(constants.names)
+        for k, name in enumerate(constants.names):
+            lag_sd = constants.phase_lag_sd_deg[k]
             lines.append(
-                f"{row.constituent:<9}{row.speed_deg_per_h:>13.7f}{row.amplitude_m:>12.4f}"
-                f"{row.amplitude_sd_m:>9.4f}{row.phase_lag_deg:>12.2f}{spread:>9}  {row.basis:<9}"
+                f"{name:<9}{speeds[k]:>13.7f}{constants.amplitude_m[k]:>12.4f}{constants.amplitude_sd_m[k]:>9.4f}"
+                f"{constants.phase_lag_deg[k]:>12.2f}{f'{lag_sd:.2f}' if np.isfinite(lag_sd) else '-':>9}"
+                f"  {constants.basis[k]:<9}"
             )
         lines += ["=" * width, "Standard deviations follow the residual's spectrum beside each constituent."]
         if any(not np.isfinite(s) for s in constants.phase_lag_sd_deg):

@@ -48,7 +48,7 @@ class GaugeRecord:
     def usable(self) -> NDArray[np.bool_]:
         """Which samples enter an analysis: finite, and flagged good, not evaluated or suspect."""
         finite = np.isfinite(self.heights.to_numpy(dtype=np.float64))
-        return finite & (self.flags.to_numpy() < FLAG_FAIL)
+        return np.asarray(finite & (self.flags.to_numpy() < FLAG_FAIL), dtype=np.bool_)
 
     @cached_property
     def times_h(self) -> NDArray[np.float64]:

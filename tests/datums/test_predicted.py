@@ -138,6 +138,16 @@ def test_notes_say_what_is_lacking() -> None:
     assert "MHWS" not in diurnal.names  # no S2
 
 
+def test_a_constituent_lost_in_the_noise_is_as_uncertain_across_as_along() -> None:
+    lag_sd = MIXED.phase_lag_sd_deg.copy()
+    lag_sd[3] = np.nan
+    filled = lag_sd.copy()
+    filled[3] = np.rad2deg(MIXED.amplitude_sd_m[3] / MIXED.amplitude_m[3])
+    one, other = (predicted_datums(replace(MIXED, phase_lag_sd_deg=sd), years=(2000, 2000)) for sd in (lag_sd, filled))
+    assert_allclose(one.height_sd_m, other.height_sd_m, rtol=1e-12)
+    assert not any("leave out" in note for note in one.notes)
+
+
 def test_form_number_and_type() -> None:
     """0.52 / 1.05 = 0.495 is mixed, mainly semidiurnal (0.25 to 1.5)."""
     assert_allclose(form_number(MIXED), 0.52 / 1.05, rtol=1e-12)

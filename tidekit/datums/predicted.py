@@ -147,9 +147,14 @@ def _gradients(
 
 
 def _spread_of_parameters(constants: HarmonicConstants) -> _Array:
-    """Standard deviations of mean level, amplitudes and phase lags; what is unknown counts only if all are."""
+    """Standard deviations of mean level, amplitudes and phase lags; what is unknown counts only if all are.
+
+    A constituent lost in the noise has no error of its phase lag; its phasor is as uncertain across as along.
+    """
     used = constants.select([n for n, a in zip(constants.names, constants.amplitude_m, strict=True) if a > 0.0])
-    spread = np.concatenate([[used.mean_level_sd_m], used.amplitude_sd_m, used.phase_lag_sd_deg])
+    across_deg = np.rad2deg(used.amplitude_sd_m / used.amplitude_m)
+    lag = np.where(np.isnan(used.phase_lag_sd_deg), across_deg, used.phase_lag_sd_deg)
+    spread = np.concatenate([[used.mean_level_sd_m], used.amplitude_sd_m, lag])
     return spread if np.all(np.isnan(spread)) else np.nan_to_num(spread)
 
 
@@ -194,7 +199,7 @@ def _notes(constants: HarmonicConstants, years: tuple[int, int], number: float) 
         notes.append(f"{count} years are less than a nodal cycle; HAT and LAT need {NODAL_CYCLE_YEARS}")
     if number > 1.5:
         notes.append("springs and neaps of M2 and S2 say little about a tide that is mainly diurnal")
-    known = np.isfinite(constants.amplitude_sd_m) & np.isfinite(constants.phase_lag_sd_deg)
+    known = np.isfinite(constants.amplitude_sd_m)
     lacking = [n for n, good in zip(constants.names, known, strict=True) if not good]
     if not known.any():
         notes.append("no errors: the constants come without standard deviations")

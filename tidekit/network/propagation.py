@@ -19,9 +19,9 @@ Float = NDArray[np.float64]
 
 DELAY_FLOOR_H = 0.5 / 60.0
 """Smallest scatter of delays between gauges to believe in: half a minute, a clock's usual reading."""
-EARLY_COUNTS = 3.0
-"""A bay, a harbour or a strait makes the tide late; nothing makes it early. So among gauges that disagree, the late
-ones are doubted first (common practice, no source)."""
+EARLY_SD_H, LATE_MEAN_H, MOST_COST = 3.0 / 60.0, 20.0 / 60.0, 5.0
+"""Scatter of delays on an open coast, mean lateness that a bay or harbour adds, and the cost at which a gauge
+counts as wrong however far off it is (common practice, no source)."""
 AMPLITUDE_FLOOR = 0.005
 """Smallest relative scatter of amplitudes between gauges to believe in: half a per cent."""
 _OFFSHORE_LEAST_KM = 1.0
@@ -179,7 +179,23 @@ def fit_delays(tides: TideArrays, delays: tuple[Delay, ...]) -> RobustFit:
     design = np.column_stack([np.ones(len(delays)), tides.along_km])
     values = np.array([delay.delay_h for delay in delays])
     own_sd = np.array([delay.delay_sd_h for delay in delays])
-    return robust_fit(design, values, own_sd, floor=DELAY_FLOOR_H, below=EARLY_COUNTS)
+    return robust_fit(design, values, own_sd, floor=DELAY_FLOOR_H, cost=late_cost)
+
+
+def late_cost(residual_h: Float) -> float:
+    """Cost of residual delays by which a line is chosen: normal when early, exponential when late, bounded.
+
+    A bay, a harbour or a strait makes the tide late and nothing makes it early, so the open coast's wave is the
+    early edge of the delays rather than their middle.
+
+    References
+    ----------
+    .. [1] Aigner, D., Lovell, C. A. K. and Schmidt, P., "Formulation and estimation of stochastic frontier production
+       function models", J. Econometrics 6 (1977) 21-37: normal and one-sided exponential errors together.
+    """
+    normal = 0.5 * (residual_h / EARLY_SD_H) ** 2
+    cost = np.where(residual_h < 0, normal, np.minimum(normal, residual_h / LATE_MEAN_H))
+    return float(np.sum(np.minimum(cost, MOST_COST)))
 
 
 def fit_levels(tides: TideArrays, column: int | None = None) -> RobustFit:

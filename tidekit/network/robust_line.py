@@ -11,6 +11,7 @@ References
 from __future__ import annotations
 
 import itertools
+from collections.abc import Callable
 from dataclasses import dataclass
 
 import numpy as np
@@ -46,7 +47,9 @@ class RobustFit:
         return float(row @ self.coefficients), float(np.sqrt(variance))
 
 
-def robust_fit(design: Float, values: Float, sd: Float, *, floor: float, below: float = 1.0) -> RobustFit:
+def robust_fit(
+    design: Float, values: Float, sd: Float, *, floor: float, cost: Callable[[Float], float] | None = None
+) -> RobustFit:
     """Fit values on a design, trimming those that disagree.
 
     Parameters
@@ -57,8 +60,9 @@ def robust_fit(design: Float, values: Float, sd: Float, *, floor: float, below: 
         Observations and their own standard deviations.
     floor : float
         Smallest misfit between gauges to believe in.
-    below : float
-        How many times worse a value below the fit counts than one as far above it, in the choice of gauges.
+    cost : callable, optional
+        Cost of residuals, shape (n,), by which the fit through some gauges is chosen; least trimmed squares by
+        default.
 
     Returns
     -------
@@ -67,34 +71,29 @@ def robust_fit(design: Float, values: Float, sd: Float, *, floor: float, below: 
     """
     used = np.ones(len(values), dtype=np.bool_)
     if len(values) >= design.shape[1] + 2:
-        used = _agreeing(design, values, sd, floor, below)
+        used = _agreeing(design, values, np.sqrt(sd**2 + floor**2), cost or _trimmed(len(values), design.shape[1]))
     coefficients, covariance, misfit = _weighted(design[used], values[used], sd[used], floor)
     return RobustFit(coefficients, covariance, used, misfit, int(used.sum()) - design.shape[1])
 
 
-def _agreeing(design: Float, values: Float, sd: Float, floor: float, below: float) -> NDArray[np.bool_]:
-    count, width = design.shape
+def _trimmed(count: int, width: int) -> Callable[[Float], float]:
     half = (count + width + 1) // 2
-    subsets = np.array(list(itertools.islice(itertools.combinations(range(count), width), _MOST_SUBSETS)))
-    own = np.sqrt(sd**2 + floor**2)
+    return lambda residual: float(np.sum(np.sort(residual**2)[:half]))
 
-    def distance(coefficients: Float) -> Float:
-        left = (values - design @ coefficients) / own
-        return np.where(left < 0, -below * left, left)
 
-    best, chosen = np.inf, np.zeros(width)
-    for subset in subsets:
-        square = design[subset]
-        if np.linalg.cond(square) > _DEGENERATE:
-            continue
-        trial = np.linalg.solve(square, values[subset])
-        score = float(np.sum(np.sort(distance(trial))[:half] ** 2))
-        if score < best:
-            best, chosen = score, trial
-    left = distance(chosen)
-    # The median residual of the better half scales the cut (1.4826: consistent for normal errors).
-    scale = max(1.4826 * float(np.median(left)), 1.0)
-    return np.asarray(left < _CUT * scale, dtype=np.bool_)
+def _agreeing(design: Float, values: Float, own: Float, cost: Callable[[Float], float]) -> NDArray[np.bool_]:
+    """Gauges near the cheapest of the fits through as many gauges as coefficients."""
+    count, width = design.shape
+    best, residual = np.inf, values
+    for subset in itertools.islice(itertools.combinations(range(count), width), _MOST_SUBSETS):
+        square = design[list(subset)]
+        if np.linalg.cond(square) < _DEGENERATE:
+            trial = values - design @ np.linalg.solve(square, values[list(subset)])
+            if (score := cost(trial)) < best:
+                best, residual = score, trial
+    # The median residual scales the cut (1.4826: consistent for normal errors).
+    scale = 1.4826 * float(np.median(np.abs(residual)))
+    return np.asarray(np.abs(residual) < _CUT * np.maximum(scale, own), dtype=np.bool_)
 
 
 def _weighted(design: Float, values: Float, sd: Float, floor: float) -> tuple[Float, Float, float]:

@@ -22,6 +22,21 @@ def add_output_options(parser: argparse.ArgumentParser, *, table: str | None = N
         parser.add_argument("--out", metavar="FILE", type=Path, help=f"write {table} to FILE (CSV)")
 
 
+def add_reading_options(parser: argparse.ArgumentParser) -> None:
+    """Add what a user may declare of an export."""
+    parser.add_argument(
+        "--layout", metavar="FILE", type=Path, help="layout of the export (TOML), instead of recognising it"
+    )
+    parser.add_argument("--column", help="name or number of the column that holds the heights")
+    parser.add_argument("--time-zone", help="zone of the times: UTC, UTC-8, Pacific/Auckland ...")
+    parser.add_argument("--unit", help="unit of the heights: m, cm, mm, ft ...")
+
+
+def reading_options(options: argparse.Namespace) -> dict[str, Any]:
+    """Give the declarations of `add_reading_options` as keywords of the readers."""
+    return {key: getattr(options, key) for key in ("layout", "column", "time_zone", "unit")}
+
+
 def jsonable(value: Any) -> Any:
     """Turn numpy, pandas and dates into what JSON has; a number that is not finite becomes null."""
     if isinstance(value, Mapping):

@@ -8,7 +8,7 @@ modulations of their parts.
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Sequence
 from functools import cache
 from typing import get_args
 
@@ -18,7 +18,7 @@ from numpy.typing import ArrayLike, NDArray
 from tidekit.astronomy.longitudes import mean_longitudes_rad
 from tidekit.astronomy.potential import potential_lines
 from tidekit.astronomy.timescales import datetime64_from_hours, hours_from_datetime64, julian_centuries_tt
-from tidekit.constituents.catalogue import Constituent, resolve
+from tidekit.constituents.catalogue import resolve
 from tidekit.constituents.constants import NodalConvention
 from tidekit.constituents.schureman import SCHUREMAN_RULES, schureman_factors
 from tidekit.errors import ConstituentError
@@ -84,12 +84,13 @@ def nodal_factors(names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConventio
     """
     times = np.asarray(t_h, dtype=np.float64)
     if nodal == "exact":
-        return _each_line_once(names, times, _side_line_sum)
+        return _with_compounds(names, _side_line_sums(_lines_of(tuple(names)), times), len(times))
     if nodal not in get_args(NodalConvention):
         message = f"unknown nodal convention {nodal!r}; there are 'exact' and 'mid_year'"
         raise ConstituentError(message)
     middles, year_of = np.unique(mid_year_h(times), return_inverse=True)
-    return _each_line_once(names, middles, _published)[year_of]
+    published = {name: _published(name, middles) for name in _lines_of(tuple(names))}
+    return _with_compounds(names, published, len(middles))[year_of]
 
 
 def carriers(names: Sequence[str], t_h: ArrayLike, *, nodal: NodalConvention = "exact") -> NDArray[np.complex128]:
@@ -168,22 +169,43 @@ def side_lines(name: str) -> tuple[NDArray[np.int64], NDArray[np.float64], NDArr
     return np.asarray(lines.doodson[same, 3:] - number[3:], dtype=np.int64), ratio, drift
 
 
-_cached_side_lines = cache(side_lines)
+@cache
+def _lines_of(names: tuple[str, ...]) -> tuple[str, ...]:
+    """Line constituents with side lines that constituents or their parts are."""
+    parts = [part for name in names for part, _ in resolve(name).parts or ((name, 1),)]
+    return tuple(name for name in dict.fromkeys(parts) if resolve(name).nodal == "lines")
 
 
-def _side_line_sum(entry: Constituent, t_h: NDArray[np.float64]) -> NDArray[np.complex128]:
-    differences, ratio, drift = _cached_side_lines(entry.name)
-    slow = mean_longitudes_rad(t_h)[:, 3:]
+@cache
+def _side_line_table(
+    names: tuple[str, ...],
+) -> tuple[NDArray[np.float64], NDArray[np.float64], NDArray[np.float64]]:
+    """Distinct differences of side lines (j, 3); ratio and drift of each in each constituent, (j, k)."""
+    found = [side_lines(name) for name in names]
+    distinct, place = np.unique(np.concatenate([line[0] for line in found]), axis=0, return_inverse=True)
+    column = np.repeat(np.arange(len(names)), [len(line[1]) for line in found])
+    ratio, drift = np.zeros((2, len(distinct), len(names)))
+    ratio[place, column] = np.concatenate([line[1] for line in found])
+    drift[place, column] = np.concatenate([line[2] for line in found])
+    return distinct.astype(np.float64), ratio, drift
+
+
+def _side_line_sums(names: tuple[str, ...], t_h: NDArray[np.float64]) -> dict[str, NDArray[np.complex128]]:
+    """Sum the side lines of constituents: all of them share a few dozen differences of side lines."""
+    if not names:
+        return {}
+    differences, ratio, drift = _side_line_table(names)
+    waves = np.exp(1j * (mean_longitudes_rad(t_h)[:, 3:] @ differences.T))
     since_epoch = julian_centuries_tt(t_h) - potential_lines().epoch_centuries
-    strength = ratio + np.outer(since_epoch, drift)
-    return np.asarray(np.sum(strength * np.exp(1j * slow @ differences.T), axis=1))
+    sums = waves @ ratio + since_epoch[:, np.newaxis] * (waves @ drift)
+    return dict(zip(names, sums.T, strict=True))
 
 
-def _published(entry: Constituent, t_h: NDArray[np.float64]) -> NDArray[np.complex128]:
-    if entry.name not in SCHUREMAN_RULES:
-        return _side_line_sum(entry, t_h)
-    factor = schureman_factors(entry.name, t_h)
-    if entry.name == "M1":
+def _published(name: str, t_h: NDArray[np.float64]) -> NDArray[np.complex128]:
+    if name not in SCHUREMAN_RULES:
+        return _side_line_sums((name,), t_h)[name]
+    factor = schureman_factors(name, t_h)
+    if name == "M1":
         # The published V of M1 lacks p, and its speed has p's rate: agencies run it on from the start of the
         # year, so half a year of p (20 degrees) is theirs that a p held at mid-year would take away.
         perigee = mean_longitudes_rad(np.concatenate([t_h, year_start_h(t_h)]))[:, 3]
@@ -191,25 +213,15 @@ def _published(entry: Constituent, t_h: NDArray[np.float64]) -> NDArray[np.compl
     return factor
 
 
-def _each_line_once(
-    names: Sequence[str],
-    t_h: NDArray[np.float64],
-    rule: Callable[[Constituent, NDArray[np.float64]], NDArray[np.complex128]],
+def _with_compounds(
+    names: Sequence[str], of_line: dict[str, NDArray[np.complex128]], count: int
 ) -> NDArray[np.complex128]:
-    """Apply a rule to every line needed, once; give compounds the product of their parts."""
-    lines: dict[str, NDArray[np.complex128]] = {}
-
-    def factor_of(name: str) -> NDArray[np.complex128]:
-        if name not in lines:
-            entry = resolve(name)
-            ones = np.ones(len(t_h), dtype=np.complex128)
-            lines[name] = ones if entry.nodal == "none" else rule(entry, t_h)
-        return lines[name]
-
-    result = np.ones((len(t_h), len(names)), dtype=np.complex128)
+    """Factors of constituents from those of lines: a compound has the product of its parts'."""
+    result = np.ones((count, len(names)), dtype=np.complex128)
     for column, name in enumerate(names):
-        for part, count in resolve(name).parts or ((name, 1),):
-            factor = factor_of(part)
-            # A part that is subtracted multiplies the amplitude all the same and turns the phase back.
-            result[:, column] *= (factor if count > 0 else factor.conj()) ** abs(count)
+        for part, times in resolve(name).parts or ((name, 1),):
+            if part in of_line:
+                # A part that is subtracted multiplies the amplitude all the same and turns the phase back.
+                factor = of_line[part] if times > 0 else of_line[part].conj()
+                result[:, column] *= factor if abs(times) == 1 else factor ** abs(times)
     return result

@@ -1,0 +1,127 @@
+"""Findings that a gauge's own record gives, beside its neighbours' where they help."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+import numpy as np
+
+from tidekit.astronomy.timescales import datetime64_from_hours
+from tidekit.harmonic.results import HarmonicFit
+from tidekit.quality.daily import against_neighbours, daily_levels
+from tidekit.quality.findings import Finding
+from tidekit.quality.steps import CRITICAL_T, Step, find_steps
+from tidekit.records.network import AuditSettings
+from tidekit.records.record import GaugeRecord
+
+_LEAST_COVERAGE = 0.8
+"""Part of the span that a record should cover (common practice, no source)."""
+_FLAT_HOURS = 6.0
+"""A sea level that stays the same to the last digit for so long is a stuck sensor (common practice, no source)."""
+
+
+def record_findings(
+    fits: Mapping[str, HarmonicFit], records: Mapping[str, GaugeRecord], settings: AuditSettings
+) -> tuple[Finding, ...]:
+    """Look for datum steps, stuck sensors and thin coverage.
+
+    Parameters
+    ----------
+    fits, records : mapping of gauge id
+        Analyses and records of the same gauges.
+    settings : AuditSettings
+        Thresholds.
+
+    Returns
+    -------
+    tuple of Finding
+        Unsorted.
+    """
+    findings: list[Finding] = []
+    for gauge, record in records.items():
+        findings += coverage_findings(gauge, record, settings)
+        findings += flat_findings(gauge, record)
+    return (*findings, *step_findings(fits, settings))
+
+
+def step_findings(fits: Mapping[str, HarmonicFit], settings: AuditSettings) -> tuple[Finding, ...]:
+    """Datum steps of each gauge, the weather that its neighbours share taken off."""
+    if not fits:
+        return ()
+    levels = daily_levels([fit.t_h for fit in fits.values()], [fit.residual_m for fit in fits.values()])
+    findings = []
+    for row, gauge in enumerate(fits):
+        for step in find_steps(levels.days, against_neighbours(levels, row)):
+            findings.append(_step_finding(gauge, step, settings, alone=len(fits) == 1))
+    return tuple(findings)
+
+
+def _step_finding(gauge: str, step: Step, settings: AuditSettings, *, alone: bool) -> Finding:
+    date = str(datetime64_from_hours(np.array([24.0 * step.day]))[0])[:10]
+    against = "alone, no neighbour to compare with" if alone else "less what the neighbours share"
+    sure = abs(step.size_m) >= settings.step_error_m and abs(step.size_m) > CRITICAL_T * step.sd_m
+    return Finding(
+        gauge=gauge,
+        kind="datum_step",
+        value=step.size_m,
+        value_sd=step.sd_m,
+        severity="error" if sure and not alone else "warning",
+        evidence=(
+            f"the non-tidal residual ({against}) stands {100 * abs(step.size_m):.1f} cm "
+            f"{'higher' if step.size_m > 0 else 'lower'} from {date} on: check staff and benchmark readings about then"
+        ),
+    )
+
+
+def coverage_findings(gauge: str, record: GaugeRecord, settings: AuditSettings) -> list[Finding]:
+    """A record too short for a sound analysis, or with too many gaps."""
+    times = record.times_h
+    if len(times) < 2:
+        evidence = f"{len(times)} usable samples: nothing to analyse"
+        return [_coverage(gauge, 0.0, "error", evidence)]
+    days = (times[-1] - times[0] + record.step_h) / 24.0
+    share = float(min(len(times) * record.step_h / (24.0 * days), 1.0))
+    if days < settings.minimum_days:
+        evidence = f"the record spans {days:.1f} days; {settings.minimum_days:g} are wanted for an audit"
+        return [_coverage(gauge, share, "warning", evidence)]
+    if share < _LEAST_COVERAGE:
+        evidence = (
+            f"{100 * share:.0f} % of the samples of {days:.0f} days are there; {100 * _LEAST_COVERAGE:.0f} % are wanted"
+        )
+        return [_coverage(gauge, share, "warning", evidence)]
+    return []
+
+
+def _coverage(gauge: str, share: float, severity: str, evidence: str) -> Finding:
+    return Finding(
+        gauge=gauge,
+        kind="coverage",
+        value=share,
+        value_sd=float("nan"),
+        severity="error" if severity == "error" else "warning",
+        evidence=evidence,
+    )
+
+
+def flat_findings(gauge: str, record: GaugeRecord) -> list[Finding]:
+    """Longest spell in which the height does not change in its last digit."""
+    times, heights = record.times_h, record.heights_m
+    if len(times) < 3:
+        return []
+    moved = np.flatnonzero(np.diff(heights) != 0.0)
+    edges = np.concatenate([[-1], moved, [len(heights) - 1]])
+    spells = times[edges[1:]] - times[edges[:-1] + 1]
+    longest = int(np.argmax(spells))
+    hours = float(spells[longest])
+    # A spell must hold samples throughout: two equal heights across a gap are no stuck sensor.
+    full = edges[longest + 1] - edges[longest] >= 0.5 * hours / record.step_h
+    if hours < _FLAT_HOURS or not full:
+        return []
+    start = str(datetime64_from_hours(times[[edges[longest] + 1]])[0])[:16].replace("T", " ")
+    stuck_m = heights[edges[longest] + 1]
+    evidence = f"the height stays at {stuck_m:.3f} m for {hours:.1f} h from {start} UTC: stuck sensor or well"
+    return [
+        Finding(
+            gauge=gauge, kind="sensor_flat", value=hours, value_sd=float("nan"), severity="warning", evidence=evidence
+        )
+    ]

@@ -109,7 +109,8 @@ def _regular(t_h: _Array, height_m: _Array, step_h: float) -> tuple[_Array, _Arr
         raise AnalysisError(message)
     place = np.rint((t_h - t_h[0]) / step_h).astype(np.intp)
     strays = np.abs(t_h - t_h[0] - place * step_h) > _OFF_GRID_PART * step_h
-    if np.any(strays) or np.any(np.diff(place) < 1):
+    strays[1:] |= np.diff(place) < 1
+    if np.any(strays):
         message = (
             f"{int(strays.sum())} of {len(t_h)} times do not lie on a regular grid of {step_h * 60:g} min; "
             "high and low waters are sought in regular records only"

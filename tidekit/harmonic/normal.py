@@ -1,7 +1,7 @@
-"""Normal equations of mean, regressors and constituents in real parameters, and their solution.
+"""Normal equations in real parameters, and their solution.
 
-Parameters are the coefficients of the q regressors, then for each fitted constituent the real and the imaginary
-part of its phasor ``P = H exp(-iG)``: the model is ``R x + Re sum c_k P_k``.
+Parameters are the mean level, the trend, then for each fitted constituent the real and the imaginary part of its
+phasor ``P = H exp(-iG)``, then the coefficients of regressors.
 """
 
 from __future__ import annotations
@@ -10,101 +10,130 @@ from collections.abc import Sequence
 from dataclasses import dataclass
 
 import numpy as np
-import scipy.linalg
-from numpy.typing import NDArray
 
 from tidekit.errors import AnalysisError
-from tidekit.harmonic.basis import Basis, Complex, Float
+from tidekit.harmonic.basis import Basis
+from tidekit.harmonic.columns import Complex, Float
 
-_SINGULAR = 1e-13
-"""Reciprocal condition number of the scaled normal matrix below which columns cannot be told apart."""
+_LEAST_DISTANCE = 1e-10
+"""Squared distance of a unit column from the space of the others below which they cannot be told apart: its
+coefficient would lose five digits to its neighbours, and the noise grow a hundred thousand times."""
+
+
+def mixing_matrix(tie: Complex, flat: int) -> Float:
+    """Matrix from the parameters to the complex columns' real and imaginary parts, which stand in turn.
+
+    Parameters
+    ----------
+    tie : ndarray of complex, shape (all, k)
+        Phasors of all constituents from those of the k fitted ones.
+    flat : int
+        Number of real columns (mean level, trend) before the constituents'.
+
+    Returns
+    -------
+    ndarray, shape (2 (flat + all), flat + 2 k)
+        A design row is the column's parts times this: ``Re(c P) = Re c Re P - Im c Im P``.
+    """
+    rows, fitted = tie.shape
+    matrix = np.zeros((2 * (flat + rows), flat + 2 * fitted))
+    matrix[np.arange(0, 2 * flat, 2), np.arange(flat)] = 1.0
+    real, imaginary = matrix[2 * flat :: 2], matrix[2 * flat + 1 :: 2]
+    real[:, flat : flat + fitted], real[:, flat + fitted :] = tie.real, -tie.imag
+    imaginary[:, flat : flat + fitted], imaginary[:, flat + fitted :] = -tie.imag, -tie.real
+    return matrix
 
 
 @dataclass(frozen=True, eq=False)
 class Model:
-    """A basis with constituents tied to others, and regressors beside it; p = q + 2k parameters."""
+    """Complex columns mixed into real ones, and regressors beside them; p parameters in all."""
 
     basis: Basis
-    """Carriers of all constituents, the inferred ones among them."""
-    tie: Complex
-    """Phasors of all constituents from those of the k fitted ones, shape (all, k)."""
+    """The complex columns at the samples."""
+    mixing: Float
+    """Real design columns from the complex columns' parts, of `mixing_matrix`."""
     regressors: Float
-    """Columns that are not constituents, the mean's ones first, shape (n, q)."""
+    """Further columns, shape (n, q)."""
 
     def project(self, series: Float) -> Float:
         """Transposed design matrix times a series of shape (n,); shape (p,)."""
-        tied = self.tie.conj().T @ self.basis.project(series[:, None])[:, 0]
-        # Re(c P) = Re c Re P - Im c Im P, and conj(c) y sums Re c y - i Im c y.
-        return np.concatenate([self.regressors.T @ series, tied.real, tied.imag])
+        parts = self.basis.project(series).view(np.float64)
+        return np.concatenate([parts @ self.mixing, series @ self.regressors])
 
     def evaluate(self, parameters: Float) -> Float:
         """Design matrix times parameters: the model at the samples, shape (n,)."""
-        q = self.regressors.shape[1]
-        real, imaginary = np.split(parameters[q:], 2)
-        return self.regressors @ parameters[:q] + self.basis.evaluate(self.tie @ (real + 1j * imaginary))
+        own = self.mixing.shape[1]
+        result = self.basis.evaluate((self.mixing @ parameters[:own]).view(np.complex128).conj())
+        if self.regressors.size:
+            result += self.regressors @ parameters[own:]
+        return result
 
     def normal_matrix(self) -> Float:
         """Transposed design matrix times itself, shape (p, p)."""
-        hermitian, symmetric = self.basis.gram()
-        hermitian = self.tie.conj().T @ hermitian @ self.tie
-        symmetric = self.tie.T @ symmetric @ self.tie
-        across = self.tie.conj().T @ self.basis.project(self.regressors)
-        q, k = self.regressors.shape[1], self.tie.shape[1]
-        matrix = np.empty((q + 2 * k, q + 2 * k))
-        matrix[:q, :q] = self.regressors.T @ self.regressors
-        matrix[q:, :q] = np.vstack([across.real, across.imag])
-        matrix[:q, q:] = matrix[q:, :q].T
-        real, imaginary = slice(q, q + k), slice(q + k, q + 2 * k)
-        matrix[real, real] = 0.5 * (hermitian + symmetric).real
-        matrix[imaginary, imaginary] = 0.5 * (hermitian - symmetric).real
-        matrix[real, imaginary] = -0.5 * (hermitian + symmetric).imag
-        matrix[imaginary, real] = matrix[real, imaginary].T
+        own, extra = self.mixing.shape[1], self.regressors.shape[1]
+        matrix = np.empty((own + extra, own + extra))
+        matrix[:own, :own] = self.mixing.T @ self.basis.gram() @ self.mixing
+        for column in range(extra):
+            matrix[:, own + column] = self.project(self.regressors[:, column])
+        matrix[own:, :own] = matrix[:own, own:].T
         return matrix
 
 
 @dataclass(frozen=True, eq=False)
-class Factor:
-    """A factored normal matrix."""
+class Inverse:
+    """An inverted normal matrix."""
 
-    scale: Float
-    """Square roots of its diagonal, shape (p,)."""
-    cholesky: NDArray[np.float64]
-    """Lower Cholesky factor of the matrix scaled to a unit diagonal."""
-    scaled: Float
-    """That scaled matrix: the correlations between columns."""
+    matrix: Float
+    """The normal matrix, shape (p, p)."""
+    inverse: Float
+    """Its inverse."""
 
     @classmethod
-    def of(cls, matrix: Float, close_pairs: Sequence[tuple[str, str, float]] = ()) -> Factor:
-        """Factor a normal matrix; `close_pairs` are the constituents to blame if it is singular.
+    def of(cls, matrix: Float, names: Sequence[str]) -> Inverse:
+        """Invert a normal matrix whose parameters have these names.
 
         Raises
         ------
         AnalysisError
-            If its columns cannot be told apart.
+            If its columns cannot be told apart; names those that cannot.
         """
         scale = np.sqrt(np.diag(matrix))
-        if not np.all(scale > 0):
-            message = "a column of the model is zero at every sample; leave out that constituent or regressor"
+        if not np.all(scale > 0.0):
+            empty = ", ".join(
+                dict.fromkeys(name.split()[0] for name, size in zip(names, scale, strict=True) if not size)
+            )
+            message = f"{empty} is zero at every sample; leave it out"
             raise AnalysisError(message)
         scaled = matrix / np.outer(scale, scale)
-        lowest, highest = scipy.linalg.eigvalsh(scaled)[[0, -1]]
-        if lowest < _SINGULAR * highest:
-            blame = ", ".join(f"{first} and {second}" for first, second, _ in close_pairs) or "some columns"
-            message = f"the record cannot tell {blame} apart; ask for fewer constituents, or infer the close ones"
-            raise AnalysisError(message)
-        return cls(scale, np.linalg.cholesky(scaled), scaled)
+        try:
+            np.linalg.cholesky(scaled)
+            inverse = np.linalg.inv(scaled)
+            distance = float(1.0 / np.diag(inverse).max())
+        except np.linalg.LinAlgError:
+            distance = 0.0
+        if not distance > _LEAST_DISTANCE:
+            raise AnalysisError(_inseparable(scaled, names))
+        return cls(matrix, inverse / np.outer(scale, scale))
 
     def solve(self, right: Float) -> Float:
-        """Solve for parameters, shape (p,) or (p, r)."""
-        scale = self.scale if right.ndim == 1 else self.scale[:, None]
-        return np.asarray(scipy.linalg.cho_solve((self.cholesky, True), right / scale) / scale)
-
-    def inverse(self) -> Float:
-        """Inverse of the normal matrix, shape (p, p)."""
-        return self.solve(np.eye(len(self.scale)))
+        """Solve for parameters, shape (p,), with one refinement."""
+        first = self.inverse @ right
+        return np.asarray(first + self.inverse @ (right - self.matrix @ first))
 
     @property
-    def condition_number(self) -> float:
-        """Condition number of the design matrix with its columns scaled to length one."""
-        eigenvalues = scipy.linalg.eigvalsh(self.scaled)
-        return float(np.sqrt(eigenvalues[-1] / eigenvalues[0]))
+    def scaled(self) -> Float:
+        """The normal matrix scaled to a unit diagonal: correlations between the design's columns."""
+        scale = np.sqrt(np.diag(self.matrix))
+        return np.asarray(self.matrix / np.outer(scale, scale))
+
+
+def _inseparable(scaled: Float, names: Sequence[str]) -> str:
+    """Message that names the parameters which make up the direction that the record does not see."""
+    _, vectors = np.linalg.eigh(scaled)
+    weight = vectors[:, 0] ** 2
+    order = [int(index) for index in np.argsort(-weight) if weight[index] > 0.02]
+    blame = list(dict.fromkeys(names[index].split()[0] for index in order))[:6]
+    return (
+        f"the record cannot tell {' and '.join(blame)} apart; ask for fewer of them, infer the close ones, "
+        "or take a longer record"
+    )

@@ -3,6 +3,8 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import cached_property
+from itertools import pairwise
 
 import numpy as np
 import pandas as pd
@@ -11,17 +13,86 @@ from numpy.typing import ArrayLike, NDArray
 from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.constituents.catalogue import speeds_deg_per_h
 from tidekit.constituents.constants import HarmonicConstants
+from tidekit.constituents.resolution import CALENDAR_YEAR_TOLERANCE
 from tidekit.harmonic.basis import basis_for
+from tidekit.harmonic.plan import Plan
 
 Float = NDArray[np.float64]
-HOURS_PER_YEAR = 8765.82
-"""A tropical year. [hours]"""
+
+_CORRELATED = 0.5
+"""Correlation between estimates of two constituents from which they count as poorly separated."""
+
+
+@dataclass(frozen=True)
+class ClosePair:
+    """Two fitted constituents that a record parts poorly."""
+
+    first: str
+    """The slower one."""
+    second: str
+    """The faster one."""
+    cycles: float
+    """Cycles of relative phase that the record has."""
+    correlation: float
+    """Greatest correlation between their estimates' parts."""
+
+    def __str__(self) -> str:
+        return (
+            f"{self.first} and {self.second} are hard to part: {self.cycles:.2f} cycles of relative phase, "
+            f"correlation {self.correlation:.2f}."
+        )
+
+
+def close_pairs(plan: Plan, inverse: Float, span_h: float) -> tuple[ClosePair, ...]:
+    """Find fitted constituents that a record of this length, with its gaps, parts poorly.
+
+    Parameters
+    ----------
+    plan : Plan
+        What was fitted.
+    inverse : ndarray, shape (p, p)
+        Inverse of the normal matrix.
+    span_h : float
+        Length of the record. [hours]
+
+    Returns
+    -------
+    tuple of ClosePair
+        Neighbours in speed with less than one cycle of relative phase, and pairs with correlated estimates.
+    """
+    count = len(plan.fitted)
+    part = inverse[plan.flat : plan.flat + 2 * count, plan.flat : plan.flat + 2 * count]
+    scale = np.sqrt(np.diag(part))
+    size = np.abs(part / np.outer(scale, scale)).reshape(2, count, 2, count).max(axis=(0, 2))
+    order = np.argsort(plan.speeds_deg_per_h)
+    apart = np.diff(plan.speeds_deg_per_h[order]) * span_h / 360.0
+    near = {
+        (int(a), int(b))
+        for (a, b), cycles in zip(pairwise(order), apart, strict=True)
+        if cycles < CALENDAR_YEAR_TOLERANCE
+    }
+    far = {
+        (int(a), int(b))
+        for a, b in np.argwhere(size > _CORRELATED)
+        if plan.speeds_deg_per_h[a] < plan.speeds_deg_per_h[b]
+    }
+    return tuple(
+        ClosePair(
+            plan.fitted[a],
+            plan.fitted[b],
+            float((plan.speeds_deg_per_h[b] - plan.speeds_deg_per_h[a]) * span_h / 360.0),
+            float(size[a, b]),
+        )
+        for a, b in sorted(near | far)
+    )
 
 
 @dataclass(frozen=True, eq=False, kw_only=True)
 class HarmonicFit:
     """A least-squares harmonic analysis of one record of n samples."""
 
+    plan: Plan
+    """What was asked for."""
     constants: HarmonicConstants
     """Constants of the fitted and the inferred constituents."""
     white_amplitude_sd_m: Float
@@ -30,22 +101,36 @@ class HarmonicFit:
     """Times of the samples, shape (n,). [UTC hours since 2000-01-01 00:00]"""
     residual_m: Float
     """Observed less fitted, shape (n,). [m]"""
-    trend_m_per_year: float
-    """Trend, 0 where none was asked for. [m per year]"""
-    trend_sd_m_per_year: float
-    """Its standard deviation, NaN where none was asked for. [m per year]"""
     reference_h: float
-    """Time at which the mean level holds, when there is a trend. [UTC hours since 2000-01-01 00:00]"""
+    """Time at which the mean level holds where there is a trend. [UTC hours since 2000-01-01 00:00]"""
     parameter_names: tuple[str, ...]
-    """Names of the p real parameters: ``mean``, ``trend``, then ``M2 re`` ... and ``M2 im`` ..."""
+    """Names of the p real parameters: ``mean``, ``trend``, ``M2 re`` ..., ``M2 im`` ..., regressors."""
+    parameters: Float
+    """Their values, shape (p,). [m; trend per year; regressors per their unit]"""
     covariance: Float
     """Covariance of the parameters with the residual's own colour, shape (p, p). [m^2; trend per year]"""
-    condition_number: float
-    """Condition number of the design matrix with scaled columns; near 1 is well separated."""
-    close_pairs: tuple[tuple[str, str, float], ...]
-    """Pairs of fitted constituents closer than the record can part, with the cycles of relative phase it has."""
+    design_correlation: Float
+    """Correlations between the columns of the design, shape (p, p)."""
+    close_pairs: tuple[ClosePair, ...]
+    """Fitted constituents that the record parts poorly."""
     step_h: float
     """Commonest step between samples. [h]"""
+
+    @cached_property
+    def condition_number(self) -> float:
+        """Condition number of the design with columns scaled to length one; near 1 is well separated."""
+        lowest, highest = np.linalg.eigvalsh(self.design_correlation)[[0, -1]]
+        return float(np.sqrt(highest / lowest))
+
+    @property
+    def trend_m_per_year(self) -> float:
+        """Trend, 0 where none was asked for. [m per year]"""
+        return float(self.parameters[1]) if self.plan.trend else 0.0
+
+    @property
+    def trend_sd_m_per_year(self) -> float:
+        """Its standard deviation, NaN where none was asked for. [m per year]"""
+        return float(np.sqrt(self.covariance[1, 1])) if self.plan.trend else float("nan")
 
     @property
     def span_days(self) -> float:
@@ -64,7 +149,7 @@ class HarmonicFit:
         return float((self.residual_sd_m / self.constants.mean_level_sd_m) ** 2)
 
     def predict(self, t_h: ArrayLike) -> Float:
-        """Fitted model at sorted times, trend included.
+        """Fitted tide, mean level and trend at sorted times; regressors are left out.
 
         Parameters
         ----------
@@ -77,9 +162,9 @@ class HarmonicFit:
             Heights above the record's vertical reference. [m]
         """
         times = np.asarray(t_h, dtype=np.float64)
-        basis = basis_for(self.constants.names, times, nodal=self.constants.nodal)
-        trend = self.trend_m_per_year * (times - self.reference_h) / HOURS_PER_YEAR
-        return self.constants.mean_level_m + trend + basis.evaluate(self.constants.phasors_m)
+        own = self.plan.mixing.shape[1]
+        basis = basis_for(self.plan.columns(self.reference_h), times)
+        return basis.evaluate((self.plan.mixing @ self.parameters[:own]).view(np.complex128).conj())
 
     def to_frame(self) -> pd.DataFrame:
         """One row a constituent: the constants' columns, then the white-noise amplitude error."""
@@ -125,6 +210,5 @@ class HarmonicFit:
         lines += ["=" * width, "Standard deviations follow the residual's spectrum beside each constituent."]
         if any(not np.isfinite(s) for s in constants.phase_lag_sd_deg):
             lines.append("A phase lag without sd belongs to an amplitude that cannot be told from zero.")
-        for first, second, cycles in self.close_pairs:
-            lines.append(f"{first} and {second} are hard to part: {cycles:.2f} cycles of relative phase.")
+        lines += [str(pair) for pair in self.close_pairs]
         return "\n".join(lines)

@@ -1,0 +1,82 @@
+"""From the covariance of real parameters to errors of amplitudes and phase lags."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+import scipy.stats
+
+from tidekit.constituents.resolution import RELATION_SD
+from tidekit.harmonic.columns import Complex, Float
+from tidekit.harmonic.plan import Plan
+
+LEVEL = 0.95
+"""Level at which an amplitude counts as distinguishable from zero."""
+
+
+@dataclass(frozen=True, eq=False, kw_only=True)
+class PhasorErrors:
+    """Errors of constituents' phasors, arrays of shape (k,) in the plan's order of names."""
+
+    phasors_m: Complex
+    """Phasors H exp(-iG). [m]"""
+    radial_sd_m: Float
+    """Standard deviation along the phasor: of the amplitude. [m]"""
+    across_sd_m: Float
+    """Standard deviation across it: of the phase lag times the amplitude. [m]"""
+    freedom: Float
+    """Degrees of freedom to which they are known."""
+
+    @property
+    def phase_known(self) -> np.ndarray[tuple[int], np.dtype[np.bool_]]:
+        """Whether the amplitude stands out from zero: outside its own error ellipse."""
+        bound = scipy.stats.f.ppf(LEVEL, 2, self.freedom) * (self.radial_sd_m**2 + self.across_sd_m**2)
+        return np.asarray(np.abs(self.phasors_m) ** 2 > bound, dtype=np.bool_)
+
+    @property
+    def phase_sd_deg(self) -> Float:
+        """Standard deviation of the phase lag, NaN where the amplitude does not stand out from zero. [degrees]"""
+        with np.errstate(divide="ignore", invalid="ignore"):
+            spread = np.rad2deg(self.across_sd_m / np.abs(self.phasors_m))
+        return np.where(self.phase_known, spread, np.nan)
+
+
+def phasor_errors(plan: Plan, parameters: Float, covariance: Float, freedom: Float) -> PhasorErrors:
+    """Errors of all constituents of a plan, the inferred ones with that of their relation.
+
+    Parameters
+    ----------
+    plan : Plan
+        What was fitted, k constituents in all.
+    parameters : ndarray, shape (p,)
+        Fitted parameters. [m]
+    covariance : ndarray, shape (p, p)
+        Their covariance. [m^2]
+    freedom : ndarray, shape (fitted,)
+        Degrees of freedom of the noise at each fitted constituent.
+
+    Returns
+    -------
+    PhasorErrors
+    """
+    count = len(plan.fitted)
+    real = slice(plan.flat, plan.flat + count)
+    imaginary = slice(real.stop, real.stop + count)
+    main = (parameters[real] + 1j * parameters[imaginary])[plan.source]
+    rr = np.diag(covariance[real, real])[plan.source]
+    ii = np.diag(covariance[imaginary, imaginary])[plan.source]
+    ri = np.diag(covariance[real, imaginary])[plan.source]
+    # A companion's ellipse is its main's, turned and scaled with it, so both are seen along the main's phasor.
+    direction = np.angle(main)
+    c, s = np.cos(direction), np.sin(direction)
+    gain = np.abs(plan.ratio) ** 2
+    relation = np.where(plan.inferred, (RELATION_SD * np.abs(plan.ratio * main)) ** 2, 0.0)
+    radial = gain * (c * c * rr + 2 * c * s * ri + s * s * ii) + relation
+    across = gain * (s * s * rr - 2 * c * s * ri + c * c * ii) + relation
+    return PhasorErrors(
+        phasors_m=plan.ratio * main,
+        radial_sd_m=np.sqrt(radial),
+        across_sd_m=np.sqrt(across),
+        freedom=freedom[plan.source],
+    )

@@ -87,7 +87,11 @@ def write_constants(constants: HarmonicConstants, path: str | Path, *, gauge: st
 
 
 def read_constants(
-    path: str | Path, *, gauge: str | None = None, nodal: NodalConvention | None = None
+    path: str | Path,
+    *,
+    gauge: str | None = None,
+    nodal: NodalConvention | None = None,
+    any_single: bool = False,
 ) -> HarmonicConstants:
     """Read one gauge's constants from a CSV table.
 
@@ -101,6 +105,8 @@ def read_constants(
     nodal : {"exact", "mid_year"}, optional
         Convention the constants were made with; the table's own by default, else ``mid_year``, as published
         tables are.
+    any_single : bool
+        Take the table's only gauge whatever its id.
 
     Returns
     -------
@@ -113,7 +119,7 @@ def read_constants(
         If the file is missing, a column or gauge is, or a value is impossible; names the line.
     """
     frame = _rows(Path(path))
-    frame = _of_gauge(frame, Path(path), gauge)
+    frame = _of_gauge(frame, Path(path), gauge, any_single=any_single)
     lag_column = next(column for column in _LAG_COLUMNS if column in frame)
     amplitude = _numbers(frame, "amplitude_m", path)
     lag = _numbers(frame, lag_column, path)
@@ -166,12 +172,12 @@ def _rows(path: Path) -> pd.DataFrame:
     return pd.DataFrame(cells[1:], columns=header, index=[n for n, _ in numbered[1:]], dtype=str)
 
 
-def _of_gauge(frame: pd.DataFrame, path: Path, gauge: str | None) -> pd.DataFrame:
+def _of_gauge(frame: pd.DataFrame, path: Path, gauge: str | None, *, any_single: bool) -> pd.DataFrame:
     column = next((c for c in _GAUGE_COLUMNS if c in frame), None)
     if column is None:
         return frame
     ids = list(dict.fromkeys(frame[column]))
-    if gauge is None and len(ids) == 1:
+    if len(ids) == 1 and (gauge is None or any_single):
         return frame
     if gauge in ids:
         return frame[frame[column] == gauge]

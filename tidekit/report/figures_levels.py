@@ -1,0 +1,65 @@
+"""Figures of levels: the residuals of all gauges on one time axis, and a gauge's datum ladder."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+import numpy as np
+from matplotlib.axes import Axes
+from numpy.typing import NDArray
+
+from tidekit.astronomy.timescales import datetime64_from_hours
+from tidekit.datums.table import RANGES, DatumTable
+from tidekit.harmonic.results import HarmonicFit
+from tidekit.quality.daily import daily_levels
+from tidekit.report.style import BAD, GOOD, MUTED, finish
+
+Float = NDArray[np.float64]
+
+
+def draw_residuals(fits: Mapping[str, HarmonicFit], faulty: set[str], axes: Axes) -> Axes:
+    """*Do the records move together?* Daily non-tidal residuals, one strip a gauge, gaps left open."""
+    levels = daily_levels([fit.t_h for fit in fits.values()], [fit.residual_m for fit in fits.values()])
+    times = datetime64_from_hours(24.0 * levels.days + 12.0)
+    spread = float(np.nanmedian(np.nanstd(levels.level_m, axis=1)))
+    apart = max(6.0 * spread, 0.05)
+    for row, gauge in enumerate(fits):
+        base = -row * apart
+        axes.axhline(base, color="#dddddd", linewidth=0.6)
+        shown = np.clip(levels.level_m[row], -apart, apart)
+        axes.plot(times, base + shown, color=BAD if gauge in faulty else GOOD, linewidth=0.8)
+    finish(axes, title=f"Daily residuals, {100 * apart:.0f} cm between strips", x="", y="")
+    axes.set_yticks([-row * apart for row in range(len(fits))], list(fits), fontsize=8)
+    axes.tick_params(axis="x", labelsize=8)
+    axes.set_ylim(-(len(fits) - 0.3) * apart, 0.8 * apart)
+    return axes
+
+
+def draw_datum_ladder(table: DatumTable, axes: Axes) -> Axes:
+    """*What are the levels?* Datums to scale with their 95 % intervals, labels kept apart."""
+    rows = [n for n, name in enumerate(table.names) if name not in RANGES and np.isfinite(table.height_m[n])]
+    rows.sort(key=lambda n: float(table.height_m[n]))
+    heights = table.height_m[rows]
+    span = max(float(np.ptp(heights)), 0.1)
+    labels = _apart(heights, 0.055 * span)
+    for row, height, label in zip(rows, heights, labels, strict=True):
+        reach = 1.96 * table.height_sd_m[row] if np.isfinite(table.height_sd_m[row]) else 0.0
+        axes.plot([0.0, 0.5], [height, height], color=GOOD, linewidth=1.4)
+        axes.fill_between([0.0, 0.5], height - reach, height + reach, color=GOOD, alpha=0.2, linewidth=0)
+        axes.plot([0.5, 0.62], [height, label], color=MUTED, linewidth=0.7)
+        axes.text(0.64, label, f"{table.names[row]}  {height:.3f}", va="center", fontsize=8)
+    axes.set_xlim(0.0, 1.1)
+    axes.set_ylim(min(heights.min(), labels.min()) - 0.06 * span, max(heights.max(), labels.max()) + 0.06 * span)
+    above = table.vertical_reference or "the record's zero"
+    finish(axes, title=f"{table.gauge}", x="", y=f"height above {above} [m]")
+    axes.set_xticks([])
+    return axes
+
+
+def _apart(heights: Float, least: float) -> Float:
+    """Label heights in order, at least so far apart, moved as little as a pass up and a pass down need."""
+    labels = np.array(heights, dtype=np.float64)
+    for n in range(1, len(labels)):
+        labels[n] = max(labels[n], labels[n - 1] + least)
+    excess = (labels[-1] - heights[-1]) / 2 if len(labels) else 0.0
+    return labels - excess

@@ -1,0 +1,41 @@
+"""Words of the report: what a verdict and a finding mean, and what to do."""
+
+from __future__ import annotations
+
+VERDICTS = {
+    "consistent": "The tide along this coast is a boundary wave",
+    "inconsistent": "The tide along this coast is not the boundary wave that its depth would carry",
+    "undetermined": "These gauges cannot decide whether the tide is a boundary wave",
+}
+
+KINDS = {
+    "clock_offset": "clock",
+    "clock_drift": "clock drift",
+    "time_zone": "time zone",
+    "unit_scale": "unit of height",
+    "inverted": "upside down",
+    "gain": "gain",
+    "datum_step": "datum step",
+    "datum_drift": "datum drift",
+    "sensor_flat": "sensor stuck",
+    "attenuated": "tide attenuated",
+    "phase_outlier": "phases out of line",
+    "amplitude_outlier": "amplitudes out of line",
+    "coverage": "coverage",
+}
+
+ADVICE = {
+    "clock_offset": "Compare the logger's clock with a time signal; if it confirms, shift the recorded times back.",
+    "clock_drift": "Compare the logger's clock with a time signal at both ends of the record.",
+    "time_zone": "Find out in which zone the logger wrote, declare it in the network file, and run again.",
+    "unit_scale": "Find out in which unit the logger wrote, declare it in the network file, and run again.",
+    "inverted": "A pressure or distance sensor may be wired or scaled the wrong way; turn the heights round.",
+    "gain": "Check the sensor's calibration against a staff through a whole tide.",
+    "datum_step": "Look in the log for work on the gauge at that date; level to the benchmarks before mending heights.",
+    "datum_drift": "Level the gauge to its benchmarks and repeat the check.",
+    "sensor_flat": "Check the well, the intake and the sensor; leave the spell out of any analysis.",
+    "attenuated": "Check the well and its intake for silt or growth.",
+    "phase_outlier": "Check the record for mixed clocks; if the gauge stands in a bay or strait, mark it open_coast = false.",
+    "amplitude_outlier": "Check whether the gauge stands in a bay or strait; if so, mark it open_coast = false.",
+    "coverage": "Find the missing rows or the rest of the record.",
+}

@@ -56,3 +56,7 @@ class ConstituentError(TidekitError, ValueError):
 
 class AnalysisError(TidekitError, ValueError):
     """A record or a request cannot be analysed, predicted or compared."""
+
+
+class UnfitRecordError(RecordError, AnalysisError):
+    """A record that was read but cannot be analysed; carries its file."""

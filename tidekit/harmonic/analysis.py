@@ -9,7 +9,7 @@ from numpy.typing import ArrayLike, NDArray
 
 from tidekit.constituents.constants import HarmonicConstants, NodalConvention
 from tidekit.constituents.resolution import Companion
-from tidekit.errors import AnalysisError
+from tidekit.errors import AnalysisError, UnfitRecordError
 from tidekit.harmonic.basis import Basis, basis_for
 from tidekit.harmonic.noise import noise_variance
 from tidekit.harmonic.normal import Inverse, Model
@@ -157,7 +157,7 @@ def analyse_record(
 
     Raises
     ------
-    AnalysisError
+    UnfitRecordError
         If the record cannot be analysed; names its first file.
     """
     try:
@@ -171,8 +171,7 @@ def analyse_record(
             vertical_reference=record.station.vertical_reference,
         )
     except AnalysisError as error:
-        message = f"{record.sources[0].path if record.sources else record.station.id}: {error}"
-        raise AnalysisError(message) from error
+        raise UnfitRecordError(str(error), path=record.sources[0].path if record.sources else None) from error
 
 
 def checked(t_h: ArrayLike, height_m: ArrayLike) -> tuple[Float, Float]:

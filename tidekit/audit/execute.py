@@ -21,7 +21,7 @@ from tidekit.errors import AnalysisError, InputError, RecordError
 from tidekit.files import sha256_of
 from tidekit.harmonic.analysis import analyse_record
 from tidekit.network.gauges import GaugeTide
-from tidekit.network.measure import measure_network
+from tidekit.network.measure import NetworkMeasure, measure_network
 from tidekit.quality.findings import Finding, by_gravity
 from tidekit.quality.record_findings import record_findings
 from tidekit.records.network import AuditSettings, GaugeEntry, Network
@@ -77,6 +77,36 @@ def run_audit(network: Network, *, progress: Progress = lambda _: None) -> Audit
         versions=versions(),
         started_utc=started,
     )
+
+
+def measure_gauges(network: Network) -> NetworkMeasure:
+    """Measure the wave of a network without the rest of an audit; gauges that cannot be analysed are left out.
+
+    Raises
+    ------
+    InputError
+        If an export, a layout or a table of constants cannot be read, or no gauge can be analysed.
+    """
+    tides, reasons = [], []
+    for entry in network.gauges:
+        try:
+            tides.append(_gauge_tide(entry, network.settings))
+        except RecordError as error:
+            if entry.files and not isinstance(error.__cause__, AnalysisError):
+                raise
+            reasons.append(f"{entry.station.id}: {error}")
+    if not tides:
+        message = f"no gauge of this network can be analysed ({'; '.join(reasons)})"
+        raise InputError(message, path=network.path)
+    return measure_network(tides, network.coast, network.settings)
+
+
+def _gauge_tide(entry: GaugeEntry, settings: AuditSettings) -> GaugeTide:
+    if entry.constants_path is not None:
+        constants = read_constants(entry.constants_path, gauge=entry.station.id, any_single=True)
+        return GaugeTide(station=entry.station, constants=constants)
+    fit = analyse_record(open_gauge(entry), constituents=settings.constituents, nodal=settings.nodal)
+    return GaugeTide(station=entry.station, constants=fit.constants)
 
 
 def audit_gauge(entry: GaugeEntry, settings: AuditSettings) -> GaugeAudit:

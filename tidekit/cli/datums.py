@@ -22,8 +22,8 @@ from tidekit.records.source import network_gauge, open_source
 _LABELS = {
     "form_number": "form number (K1 + O1) / (M2 + S2)",
     "tide_type": "type of tide",
-    "hat_time": "HAT falls at",
-    "lat_time": "LAT falls at",
+    "hat_time": "time of HAT",
+    "lat_time": "time of LAT",
     "tidal_days": "whole tidal days",
     "months": "months in the errors",
 }

@@ -4,9 +4,8 @@ from __future__ import annotations
 
 import argparse
 import re
-from datetime import UTC, datetime
+from datetime import UTC, datetime, tzinfo
 from pathlib import Path
-from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
 import numpy as np
 import pandas as pd
@@ -15,7 +14,8 @@ from numpy.typing import NDArray
 from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.constituents.constants import HarmonicConstants
 from tidekit.constituents.constants_table import read_constants
-from tidekit.errors import InputError
+from tidekit.errors import InputError, RecordError
+from tidekit.records.zones import zone_named
 
 _TIME = re.compile(r"\d{4}-\d{2}-\d{2}(?:[T ]\d{2}:\d{2}(?::\d{2})?(?:Z|[+-]\d{2}:\d{2})?)?")
 _STEP = re.compile(r"(\d+(?:\.\d+)?) ?(s|min|h)")
@@ -33,7 +33,7 @@ def add_prediction_options(parser: argparse.ArgumentParser) -> None:
         "--time-zone",
         metavar="ZONE",
         default="UTC",
-        help="of the times given and printed, such as Pacific/Auckland (default: %(default)s)",
+        help="of the times given and printed: UTC, UTC-8, Pacific/Auckland ... (default: %(default)s)",
     )
     parser.add_argument(
         "--nodal",
@@ -53,19 +53,18 @@ def constants_of(options: argparse.Namespace) -> HarmonicConstants:
     return read_constants(options.constants, gauge=options.gauge, nodal=options.nodal)
 
 
-def zone_of(name: str) -> ZoneInfo:
-    """Find a time zone by its name in the IANA database.
+def zone_of(name: str) -> tzinfo:
+    """Find a time zone by the names that exports may declare.
 
     Raises
     ------
     InputError
-        If there is none of that name.
+        If no zone, or more than one, has that name.
     """
     try:
-        return ZoneInfo(name)
-    except (ZoneInfoNotFoundError, ValueError, OSError) as error:
-        message = f"unknown time zone {name!r}; write an IANA name such as UTC, Etc/GMT+8 or Pacific/Auckland"
-        raise InputError(message, key="--time-zone") from error
+        return zone_named(name)
+    except RecordError as error:
+        raise InputError(str(error), key="--time-zone") from error
 
 
 def period_of(options: argparse.Namespace) -> tuple[float, float]:
@@ -85,14 +84,14 @@ def period_of(options: argparse.Namespace) -> tuple[float, float]:
     return start, end
 
 
-def parse_time_h(text: str, zone: ZoneInfo, *, key: str) -> float:
+def parse_time_h(text: str, zone: tzinfo, *, key: str) -> float:
     """Read a time; a date alone is the start of that day.
 
     Parameters
     ----------
     text : str
         ``2031-04-05``, ``2031-04-05T13:20``, with seconds or with an offset (``Z``, ``+12:00``) if need be.
-    zone : ZoneInfo
+    zone : tzinfo
         Zone of a time without an offset.
     key : str
         The option, for messages.
@@ -114,7 +113,7 @@ def parse_time_h(text: str, zone: ZoneInfo, *, key: str) -> float:
             exists = earlier.astimezone(UTC).astimezone(zone).replace(tzinfo=None) == when
             what = "happens twice" if exists else "does not exist"
             choices = " or ".join(time.isoformat(timespec="minutes") for time in (earlier, later))
-            message = f"{text} {what} in {zone.key}, where clocks change then; write {choices}"
+            message = f"{text} {what} in {zone}, where clocks change then; write {choices}"
             raise InputError(message, key=key)
         when = earlier
     return (when - _EPOCH).total_seconds() / 3600.0
@@ -151,7 +150,7 @@ def parse_step_h(text: str) -> float:
     return step
 
 
-def local_times(t_h: NDArray[np.float64], zone: ZoneInfo) -> pd.DatetimeIndex:
+def local_times(t_h: NDArray[np.float64], zone: tzinfo) -> pd.DatetimeIndex:
     """Times in a zone, to the millisecond."""
     utc = pd.DatetimeIndex(datetime64_from_hours(t_h)).round("ms").tz_localize("UTC")
     return utc.tz_convert(zone)

@@ -8,7 +8,7 @@ import pandas as pd
 
 from tidekit.cli.main import CAUTION, EXIT_DONE
 from tidekit.cli.output import add_output_options, print_json, write_table
-from tidekit.cli.periods import add_prediction_options, constants_of, heading, iso_times, period_of
+from tidekit.cli.periods import add_prediction_options, constants_of, heading, iso_times, period_of, zone_of
 from tidekit.prediction.tide_table import tide_table
 
 _KINDS = "HH higher and H lower high water of the tidal day, LL lower and L higher low water"
@@ -32,7 +32,7 @@ def run(options: argparse.Namespace) -> int:
     """Run the command."""
     start, end = period_of(options)
     constants = constants_of(options)
-    table = tide_table(constants, start, end, time_zone=options.time_zone)
+    table = tide_table(constants, start, end, time_zone=zone_of(options.time_zone))
     times = iso_times(pd.DatetimeIndex(table["time"]))
     frame = table.assign(time=times, height_m=table["height_m"].round(4))
     if options.out:

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import html
 import math
+from importlib.resources import files
 
 import pandas as pd
 
@@ -21,31 +22,7 @@ from tidekit.report.figures_network import (
 from tidekit.report.pictures import svg_picture
 from tidekit.report.words import ADVICE, KINDS, VERDICTS
 
-_STYLE = """
-:root { color-scheme: light; --ink: #1b2733; --quiet: #52606d; --line: #d5dbe1; --paper: #ffffff; --wash: #f3f6f8; }
-* { box-sizing: border-box; }
-body { margin: 0 auto; max-width: 68rem; padding: 1.2rem 1rem 3rem; color: var(--ink); background: var(--paper);
-  font: 16px/1.5 system-ui, sans-serif; }
-h1 { font-size: 1.6rem; margin: 0 0 .2rem; } h2 { font-size: 1.2rem; margin: 2.2rem 0 .5rem; }
-h3 { font-size: 1rem; margin: 0 0 .2rem; }
-p { margin: .4rem 0; max-width: 46rem; } .quiet { color: var(--quiet); font-size: .9rem; }
-.caution { border-left: .35rem solid #b45309; background: #fff7ed; padding: .5rem .8rem; margin: .8rem 0; max-width: none; }
-.verdict { border: 1px solid var(--line); border-left: .35rem solid var(--quiet); padding: .7rem .9rem; margin: .8rem 0; }
-.consistent { border-left-color: #047857; } .inconsistent { border-left-color: #b91c1c; }
-.finding { border: 1px solid var(--line); padding: .7rem .9rem; margin: .6rem 0; }
-.mark { display: inline-block; padding: 0 .5rem; font-size: .8rem; font-weight: 600; color: #fff; background: #52606d; }
-.error .mark { background: #b91c1c; } .warning .mark { background: #92400e; }
-figure { margin: .8rem 0; } figure svg { width: 100%; height: auto; max-width: 100%; display: block; }
-figcaption { color: var(--quiet); font-size: .9rem; max-width: 46rem; }
-.pair { display: grid; gap: 1.2rem; grid-template-columns: repeat(auto-fit, minmax(min(100%, 26rem), 1fr)); }
-.three { display: grid; gap: .6rem; grid-template-columns: repeat(auto-fit, minmax(15rem, 1fr)); }
-.table { overflow-x: auto; } table { border-collapse: collapse; font-size: .85rem; font-variant-numeric: tabular-nums; }
-th, td { padding: .2rem .55rem; border-bottom: 1px solid var(--line); text-align: right; white-space: nowrap; }
-th { background: var(--wash); } td.text, th.text { text-align: left; white-space: normal; min-width: 5rem; }
-details { margin: .5rem 0; } summary { cursor: pointer; font-weight: 600; padding: .25rem 0; }
-code { overflow-wrap: anywhere; font-size: .85em; }
-@media print { body { max-width: none; font-size: 11px; } .finding, figure { break-inside: avoid; } }
-"""
+_STYLE = files("tidekit.report").joinpath("page.css").read_text(encoding="utf-8")
 
 
 def report_page(audit: Audit) -> str:
@@ -151,7 +128,7 @@ def _gauges(audit: Audit) -> str:
                 width=7.2,
                 height=3.0,
             ),
-            "What is wrong with this gauge? A straight line through zero is a clock; a level off one is a gain or a unit.",
+            "What is wrong with this gauge? A line through zero is a clock; a level off one is a gain or a unit.",
         )
         for p in prints
     ]
@@ -202,13 +179,15 @@ def _tables(audit: Audit) -> str:
 
 def _run(audit: Audit) -> str:
     rows = "".join(
-        f'<tr><td class="text"><code>{html.escape(source.path)}</code></td><td class="text"><code>{source.sha256}</code></td></tr>'
+        f'<tr><td class="text"><code>{html.escape(source.path)}</code></td>'
+        f'<td class="text"><code>{source.sha256}</code></td></tr>'
         for source in audit.inputs
     )
     ledgers = "".join(
         f'<tr><td class="text">{html.escape(gauge.station.label)}</td><td>{gauge.record.ledger.rows}</td>'
         f"<td>{gauge.record.ledger.kept}</td><td>{gauge.record.ledger.flagged}</td>"
-        f'<td>{len(gauge.record.ledger.rejected)}</td><td class="text">{html.escape(gauge.record.layout_name)}</td></tr>'
+        f"<td>{len(gauge.record.ledger.rejected)}</td>"
+        f'<td class="text">{html.escape(gauge.record.layout_name)}</td></tr>'
         for gauge in audit.gauges
         if gauge.record is not None
     )
@@ -218,7 +197,8 @@ def _run(audit: Audit) -> str:
         '<details><summary>What became of every row</summary><div class="table"><table><tr><th class="text">gauge</th>'
         '<th>rows</th><th>kept</th><th>missing</th><th>rejected</th><th class="text">layout</th></tr>'
         f"{ledgers}</table></div></details>\n"
-        f'<details><summary>Inputs and their SHA-256</summary><div class="table"><table>{rows}</table></div></details>\n'
+        '<details><summary>Inputs and their SHA-256</summary><div class="table"><table>'
+        f"{rows}</table></div></details>\n"
         f'<p class="quiet">{html.escape(versions)}</p>'
     )
 

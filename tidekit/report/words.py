@@ -35,7 +35,7 @@ ADVICE = {
     "datum_drift": "Level the gauge to its benchmarks and repeat the check.",
     "sensor_flat": "Check the well, the intake and the sensor; leave the spell out of any analysis.",
     "attenuated": "Check the well and its intake for silt or growth.",
-    "phase_outlier": "Check the record for mixed clocks; if the gauge stands in a bay or strait, mark it open_coast = false.",
-    "amplitude_outlier": "Check whether the gauge stands in a bay or strait; if so, mark it open_coast = false.",
+    "phase_outlier": "Check the record for mixed clocks; a gauge in a bay or strait wants open_coast = false.",
+    "amplitude_outlier": "A gauge in a bay or strait wants open_coast = false.",
     "coverage": "Find the missing rows or the rest of the record.",
 }

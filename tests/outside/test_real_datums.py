@@ -15,8 +15,10 @@ from tidekit.astronomy.timescales import hours_from_datetime64
 from tidekit.constituents.constants_table import read_constants
 from tidekit.datums.observed import datums_of_series
 from tidekit.datums.predicted import predicted_datums
+from tidekit.harmonic.analysis import analyse_record
 from tidekit.prediction.tidal_day import tidal_day_kinds
 from tidekit.prediction.turning_points import TurningPoints
+from tidekit.records.reading import read_record
 
 REAL = Path(__file__).parents[2].parent / "shared" / "real"
 pytestmark = pytest.mark.skipif(not REAL.is_dir(), reason="the real records are not beside the repository")
@@ -110,3 +112,17 @@ def test_ranks_of_the_published_waters() -> None:
     epoch, years = (predicted_datums(constants, years=y) for y in ((1983, 2001), (2015, 2017)))
     great_range = ours["MHHW"] - ours["MLLW"] + epoch.height("GT") - years.height("GT")
     assert_allclose(great_range, GREAT_RANGE_FT * FOOT_M, atol=GREAT_RANGE_M)
+
+
+NEAH_BAY_M = 0.01
+"""Half a centimetre was found in each level: constants of one year stand for nineteen, since the nodal modulation is
+exact."""
+
+
+def test_neah_bay_from_the_raw_export_of_one_year(published: pd.DataFrame) -> None:
+    """Export of 2006 to record, to constants, to datums of 1983-2001 above mean sea level."""
+    record = read_record(REAL / "pacific_coast" / "NeahBay_31-Dec-2005_02-Jan-2007.csv")
+    table = predicted_datums(analyse_record(record).constants, years=(1983, 2001))
+    expected = [published.loc["9443090", f"{name.lower()}_minus_msl_m"] for name in WATERS]
+    above_mean = [table.height(name) - table.height("MSL") for name in WATERS]
+    assert_allclose(above_mean, expected, atol=NEAH_BAY_M, rtol=0)

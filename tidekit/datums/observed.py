@@ -95,8 +95,8 @@ def datums_of_series(
     Notes
     -----
     Only tidal days without a hole count. Errors come from the scatter of the means of successive synodic months,
-    with their serial correlation: how far the record's mean may lie from that of a much longer record with the
-    same sea level and the same state of the nodal cycle.
+    with their serial correlation (see `serial.mean_sd`): how far the record's mean may lie from that of a much
+    longer record with the same mean sea level and the same state of the nodal cycle.
 
     Weather lifts the higher of two nearly equal high waters of a day and lowers the lower low water. So where the
     diurnal inequality is small beside the weather, MHHW observed lies above MHHW predicted, by a centimetre or
@@ -118,12 +118,12 @@ def datums_of_series(
         raise AnalysisError(message)
     heights = {name: float(water.height_m.mean()) for name, water in waters.items()}
     heights["MSL"] = float(np.nanmean(tides.height_m))
-    batches = _batch_means(tides, waters)
+    batch_t_h, batches = _batch_means(tides, waters)
     for name, parts in MIXTURES.items():
         heights[name] = sum(factor * heights[part] for part, factor in parts.items())
         batches[name] = np.sum([factor * batches[part] for part, factor in parts.items()], axis=0)
     names = (*_LEVELS, *RANGES)
-    spread = mean_sd(np.stack([batches[name] for name in names], axis=1))
+    spread = mean_sd(np.stack([batches[name] for name in names], axis=1), batch_t_h)
     first, last = datetime64_from_hours(times[[0, -1]])
     days = len(waters["MHHW"]), round(float(np.ptp(times)) / TIDAL_DAY_H)
     return DatumTable(
@@ -161,8 +161,8 @@ def _whole_days(tides: ObservedTides, edge_h: float) -> NDArray[np.int64]:
     return np.asarray(days[(seen == np.bincount(day)) & (seen >= np.floor(TIDAL_DAY_H / step))])
 
 
-def _batch_means(tides: ObservedTides, waters: dict[str, TurningPoints]) -> dict[str, _Array]:
-    """Means of each quantity in each month that is whole enough, (b,) each."""
+def _batch_means(tides: ObservedTides, waters: dict[str, TurningPoints]) -> tuple[_Array, dict[str, _Array]]:
+    """Middles of the months that are whole enough, and the means of each quantity in them, (b,) each."""
     start = float(tides.grid_h[0])
     count = int(batch_numbers(tides.grid_h[-1:], start)[0]) + 1
     finite = np.isfinite(tides.height_m)
@@ -174,7 +174,8 @@ def _batch_means(tides: ObservedTides, waters: dict[str, TurningPoints]) -> dict
         number[name] = np.bincount(batch, minlength=count)
         total[name] = np.bincount(batch, weights=heights, minlength=count)
     enough = np.minimum(number["MHHW"], number["MLLW"]) >= _LEAST_BATCH_PART * BATCH_H / TIDAL_DAY_H
-    return {name: total[name][enough] / number[name][enough] for name in sources}
+    middle = np.asarray(start + BATCH_H * (np.flatnonzero(enough) + 0.5), dtype=np.float64)
+    return middle, {name: total[name][enough] / number[name][enough] for name in sources}
 
 
 def _notes(span_h: float, days: tuple[int, int], months: int) -> tuple[str, ...]:

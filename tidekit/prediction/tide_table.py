@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+from datetime import tzinfo
+
 import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
@@ -15,7 +17,9 @@ from tidekit.prediction.turning_points import TurningPoints, check_period, turni
 COLUMNS = ("time", "height_m", "kind")
 
 
-def tide_table(constants: HarmonicConstants, start_h: float, end_h: float, *, time_zone: str = "UTC") -> pd.DataFrame:
+def tide_table(
+    constants: HarmonicConstants, start_h: float, end_h: float, *, time_zone: str | tzinfo = "UTC"
+) -> pd.DataFrame:
     """Tabulate the high and low waters of a period.
 
     Parameters
@@ -24,8 +28,8 @@ def tide_table(constants: HarmonicConstants, start_h: float, end_h: float, *, ti
         What to predict from.
     start_h, end_h : float
         The period, the end not included. [UTC hours since 2000-01-01 00:00]
-    time_zone : str
-        Name of the time zone of the printed times, as in the IANA database.
+    time_zone : str or tzinfo
+        Time zone of the printed times; a string is a name of the IANA database.
 
     Returns
     -------

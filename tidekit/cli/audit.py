@@ -24,7 +24,8 @@ def add_parser(commands: Any) -> None:
         "audit",
         help="audit a whole network: constants, datums, wave, findings, report",
         description="Read every gauge of a network, fit its tide, measure the wave along the coast, and name the "
-        "gauges that break it. Leaves constants.csv, datums.csv, propagation.csv, findings.csv, audit.json and report.html.",
+        "gauges that break it. Leaves constants.csv, datums.csv, propagation.csv, findings.csv, audit.json and "
+        "report.html.",
         epilog="example: tidekit audit sample_series/network.toml --out audit_out. Exit code 1: there are findings "
         "at or above --fail-on.",
     )

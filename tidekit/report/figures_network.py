@@ -17,6 +17,9 @@ from tidekit.report.style import BAD, GOOD, MARKERS, MUTED, OKABE_ITO, finish
 
 Float = NDArray[np.float64]
 
+_MOST_DRAWN = 5
+"""Constituents in one picture that a reader can tell apart."""
+
 
 def draw_map(stations: Sequence[Station], coast: CoastSpec, faulty: set[str], axes: Axes) -> Axes:
     """*Where are the gauges?* Gauges by latitude and longitude, the coast between them, and those with findings."""
@@ -45,70 +48,60 @@ def draw_map(stations: Sequence[Station], coast: CoastSpec, faulty: set[str], ax
 
 
 def draw_phase_along_coast(measure: NetworkMeasure, axes: Axes) -> Axes:
-    """*Where does the tide go?* Delay of each constituent against distance, with the theory's speed as a band.
+    """*Where does the tide go?* Phase lag against distance, one line a constituent, the theory's speed as a band.
 
-    Phase lags are divided by the constituent's speed and its own start taken off, so that a wave without dispersion
-    draws one line.
+    Phase lags are unwrapped beside the delay that all constituents share. The strongest five are drawn.
     """
     fit = measure.propagation
+    labels = {"x": "distance along the coast [km]", "y": "phase lag, unwrapped [deg]"}
     if fit.delay_fit is None:
         axes.text(0.5, 0.5, fit.verdict.evidence, ha="center", wrap=True, transform=axes.transAxes)
-        return finish(axes, title="Delay along the coast", x="distance along the coast [km]", y="delay [h]")
+        return finish(axes, title="Phase lag along the coast", **labels)
     tides, line = fit.tides, fit.delay_fit
-    joint = np.array([delay.delay_h for delay in fit.delays])
-    reach = np.array([tides.along_km.min(), tides.along_km.max()])
+    strongest = np.sort(np.argsort(-np.median(tides.amplitude_m, axis=0), kind="stable")[:_MOST_DRAWN])
+    shown = np.array([_unwrapped_lag_deg(fit, int(column)) for column in strongest])
     middle = float(tides.along_km[line.used].mean())
-    level = float(line.coefficients @ [1.0, middle])
-    axes.plot(reach, line.coefficients[0] + line.coefficients[1] * reach, color="black", linewidth=1.2, label="fitted")
-    if measure.theory is not None:
-        slow = measure.theory.sense / (3.6 * measure.theory.wave.speed_m_per_s)
-        x = np.linspace(float(reach[0]), float(reach[1]), 50)
-        low, high = level + slow * (x - middle) / 0.9, level + slow * (x - middle) / 1.1
-        axes.fill_between(x, low, high, color="#bbbbbb", alpha=0.5, linewidth=0, label="sqrt(g h), ±10 %")
-    for column, name in enumerate(tides.names):
-        speed = tides.speeds_deg_per_h[column]
-        left = (tides.lag_deg[:, column] - tides.lag_deg[0, column] - speed * joint + 180.0) % 360.0 - 180.0
-        own = joint + left / speed
-        own -= np.median((own - joint)[line.used])
-        colour, marker = OKABE_ITO[column % len(OKABE_ITO)], MARKERS[column % len(MARKERS)]
-        axes.errorbar(
-            tides.along_km,
-            own,
-            yerr=1.96 * tides.lag_sd_deg[:, column] / speed,
-            fmt=marker,
-            color=colour,
-            markersize=4.5,
-            alpha=0.85,
-            linewidth=1,
-            label=name,
-        )
-    for row in np.flatnonzero(~line.used):
+    x = np.linspace(float(tides.along_km.min()), float(tides.along_km.max()), 40)
+    for row, column in enumerate(strongest):
+        speed, colour = float(tides.speeds_deg_per_h[column]), OKABE_ITO[row]
+        slope = speed * float(line.coefficients[1])
+        level = float(np.mean(shown[row][line.used] - slope * (tides.along_km[line.used] - middle)))
+        axes.plot(x, level + slope * (x - middle), color=colour, linewidth=1.0)
+        if measure.theory is not None:
+            steep = speed * measure.theory.sense / (3.6 * measure.theory.wave.speed_m_per_s) * (x - middle)
+            axes.fill_between(x, level + steep / 0.9, level + steep / 1.1, color=colour, alpha=0.15, linewidth=0)
+        reach = 1.96 * tides.lag_sd_deg[:, column]
+        marker = MARKERS[row]
+        style = {"color": colour, "markersize": 4.5, "linewidth": 1, "label": tides.names[column]}
+        axes.errorbar(tides.along_km, shown[row], yerr=reach, fmt=marker, **style)
+    _clip_to_wave(fit, shown, axes)
+    for row in map(int, np.flatnonzero(~line.used)):
+        place = (float(tides.along_km[row]), float(shown[:, row].max()))
         axes.annotate(
-            tides.ids[row],
-            (tides.along_km[row], joint[row]),
-            xytext=(7, -3),
-            textcoords="offset points",
-            color=BAD,
-            fontsize=8,
+            tides.ids[row], place, xytext=(0, 7), textcoords="offset points", ha="center", color=BAD, fontsize=8
         )
-    _clip_to_wave(fit, joint, axes)
-    axes.legend(fontsize=7, ncols=2, frameon=False)
-    return finish(
-        axes, title="Delay along the coast (named: off the wave)", x="distance along the coast [km]", y="delay [h]"
-    )
+    axes.legend(fontsize=8, frameon=False, loc="upper left")
+    return finish(axes, title="Phase lag along the coast (band: sqrt(g h) ± 10 %)", **labels)
 
 
-def _clip_to_wave(fit: PropagationFit, joint: Float, axes: Axes) -> None:
+def _unwrapped_lag_deg(fit: PropagationFit, column: int) -> Float:
+    """Phase lags of one constituent at all gauges, whole turns added so that they follow the joint delay. [degrees]"""
+    lag, speed = fit.tides.lag_deg[:, column], fit.tides.speeds_deg_per_h[column]
+    expected = lag[0] + speed * np.array([delay.delay_h for delay in fit.delays])
+    return np.asarray(expected + (lag - expected + 180.0) % 360.0 - 180.0)
+
+
+def _clip_to_wave(fit: PropagationFit, shown: Float, axes: Axes) -> None:
     """Keep the axis on the wave, and say which gauges lie beyond it: a wrong zone would flatten the picture."""
-    used = joint[fit.used]
-    room = max(0.35 * float(np.ptp(used)), 0.5)
-    low, high = float(used.min()) - room, float(used.max()) + room
-    outside = [f"{fit.tides.ids[n]} at {joint[n]:+.1f} h" for n in range(len(joint)) if not low < joint[n] < high]
+    used = shown[:, fit.used]
+    room = max(0.12 * float(np.ptp(used)), 10.0)
+    low, high = float(used.min()) - room, float(used.max()) + 2.0 * room
+    beyond = ~np.all((shown > low) & (shown < high), axis=0)
+    outside = [f"{fit.tides.ids[n]} at {fit.delays[n].delay_h:+.1f} h" for n in np.flatnonzero(beyond)]
     axes.set_ylim(low, high)
     if outside:
-        axes.text(
-            0.98, 0.02, "beyond: " + ", ".join(outside), ha="right", color=BAD, fontsize=8, transform=axes.transAxes
-        )
+        text = "beyond: " + ", ".join(outside)
+        axes.text(0.98, 0.02, text, ha="right", color=BAD, fontsize=8, transform=axes.transAxes)
 
 
 def draw_amplitude_across(measure: NetworkMeasure, axes: Axes) -> Axes:

@@ -38,6 +38,11 @@ class PotentialLines:
     """Epoch of the amplitudes. [Julian centuries since J2000.0]"""
 
 
+def amplitude_m(lines: PotentialLines, centuries: float) -> NDArray[np.float64]:
+    """Amplitudes at a time, shape (n,). [m; the time in Julian centuries TT since J2000.0]"""
+    return lines.amplitude_m + (centuries - lines.epoch_centuries) * lines.drift_m_per_century
+
+
 @cache
 def potential_lines() -> PotentialLines:
     """Read the committed table.

@@ -6,8 +6,10 @@ from numpy.testing import assert_allclose
 
 pytest.importorskip("erfa", reason="pyerfa comes with the extra `test`")
 
-from tidekit.astronomy.derive import candidates, derive, sun_pair, table_text
+from tidekit.astronomy.derive import candidates, derive, slow_function, sun_pair, table_text
+from tidekit.astronomy.kepler_sun import harmonic, sun_on_ellipse
 from tidekit.astronomy.potential import potential_lines
+from tidekit.astronomy.sky import Body
 
 SHORT_SPAN_DAYS = 100 * 365.25
 """Two centuries part lines 80 years apart, which the degree-3 terdiurnal lines mostly are."""
@@ -32,8 +34,8 @@ SERIES = 1e-3
 def test_the_suns_pairs_are_split_on_an_ellipse() -> None:
     """P1's companion of twice the perigee comes from K1's solar part, by (a/r)^3 alone.
 
-    Hansen's coefficients of (a/r)^3: constant 1 + 3/2 e^2, second harmonic 9/4 e^2 on either side (Brouwer and Clemence,
-    "Methods of Celestial Mechanics", 1961, chapter II, from memory).
+    Hansen's coefficients of (a/r)^3: constant 1 + 3/2 e^2, second harmonic 9/4 e^2 on either side (Brouwer and
+    Clemence, "Methods of Celestial Mechanics", 1961, chapter II, from memory).
     """
     ascension, declination, nearness = sun_on_ellipse()
     sun = Body(mass_over_earth=1.0, right_ascension_rad=ascension, declination_rad=declination, parallax=nearness)

@@ -9,7 +9,7 @@ from __future__ import annotations
 import csv
 from collections.abc import Iterable, Sequence
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, cached_property
 from importlib.resources import files
 from typing import Literal, cast
 
@@ -51,7 +51,7 @@ class Constituent:
         """The compound's sum, or the name of a line."""
         return format_makeup(self.parts) if self.parts else self.name
 
-    @property
+    @cached_property
     def speed_deg_per_h(self) -> float:
         """Speed: the rate of V at the epoch J2000. [degrees per hour]"""
         return float(np.dot(self.doodson, rates_deg_per_h()))

@@ -110,7 +110,7 @@ def fit(
     inverse = Inverse.of(model.normal_matrix(), names)
     parameters = inverse.solve(model.project(heights))
     residual = heights - model.evaluate(parameters)
-    speeds = np.concatenate([np.zeros(1), plan.speeds_deg_per_h])
+    speeds = np.concatenate([np.zeros(1), plan.fitted_speeds_deg_per_h])
     variance, freedom = noise_variance(residual, times, step_h, speeds)
     # Parameters in order: mean and trend, real and imaginary parts, regressors (taken to act at low frequency).
     scale = np.sqrt(np.concatenate([variance[[0] * plan.flat], *(variance[1:],) * 2, variance[[0] * len(regressors)]]))

@@ -7,16 +7,13 @@ level and a trend are such columns too: they do not turn, and a trend is linear 
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 from dataclasses import dataclass
-from functools import cache, partial
 
 import numpy as np
 from numpy.typing import NDArray
 
-from tidekit.constituents.catalogue import speeds_deg_per_h
-from tidekit.constituents.constants import NodalConvention
-from tidekit.constituents.modulation import carriers, year_start_h
+from tidekit.constituents.modulation import year_start_h
 
 Float = NDArray[np.float64]
 Complex = NDArray[np.complex128]
@@ -38,15 +35,6 @@ class Columns:
     """The columns at times, from shape (n,) to (n, k)."""
     yearly_jumps: bool = False
     """Whether the slow factors jump at each New Year (UTC), as they do under the mid-year convention."""
-
-    @classmethod
-    def of_constituents(
-        cls, names: Sequence[str], *, nodal: NodalConvention, trend_about_h: float | None = None
-    ) -> Columns:
-        """Columns of the mean level, a trend per year about a time if that is given, and constituents."""
-        flat = 1 if trend_about_h is None else 2
-        turn = np.concatenate([np.zeros(flat), np.deg2rad(_speeds(tuple(names)))])
-        return cls(turn, partial(_level_and_carriers, tuple(names), nodal, trend_about_h), nodal != "exact")
 
     def edges_h(self, start_h: float, end_h: float) -> Float:
         """Block edges from a start past an end, none further apart than `BLOCK_H`, and one at each jump."""
@@ -82,17 +70,3 @@ class Columns:
             bend = np.diff(slow, 2, axis=0) / 12.0
             slow = slow - np.concatenate([bend[:1], bend, bend[-1:]])
         return slow[:-1] * turned[:-1], np.diff(slow, axis=0) * turned[:-1]
-
-
-@cache
-def _speeds(names: tuple[str, ...]) -> Float:
-    return speeds_deg_per_h(names)
-
-
-def _level_and_carriers(
-    names: tuple[str, ...], nodal: NodalConvention, trend_about_h: float | None, t_h: Float
-) -> Complex:
-    flat = [np.ones((len(t_h), 1))]
-    if trend_about_h is not None:
-        flat.append((t_h[:, None] - trend_about_h) / HOURS_PER_YEAR)
-    return np.hstack([*flat, carriers(names, t_h, nodal=nodal)])

@@ -9,11 +9,13 @@ from functools import cached_property
 import numpy as np
 from numpy.typing import NDArray
 
-from tidekit.constituents.catalogue import resolve, resolve_names
+from tidekit.constituents.catalogue import resolve, resolve_names, speeds_deg_per_h
 from tidekit.constituents.constants import NodalConvention
+from tidekit.constituents.modulation import carriers
 from tidekit.constituents.resolution import Companion, equilibrium_companions, resolvable
 from tidekit.errors import AnalysisError
-from tidekit.harmonic.columns import Columns, Complex, Float
+from tidekit.harmonic.columns import HOURS_PER_YEAR, Columns, Complex, Float
+from tidekit.harmonic.minor import MinorGroup, minor_carriers, minor_groups, minor_speeds_deg_per_h
 from tidekit.harmonic.normal import mixing_matrix
 
 
@@ -25,6 +27,8 @@ class Plan:
     """Constituents with parameters of their own."""
     companions: tuple[Companion, ...] = ()
     """Constituents tied to fitted ones."""
+    minor: tuple[MinorGroup, ...] = ()
+    """Minor lines of the potential that follow fitted constituents; they are not in the constants."""
     trend: bool = False
     """Whether a linear trend is fitted."""
     nodal: NodalConvention = "exact"
@@ -64,7 +68,10 @@ class Plan:
         if orphans:
             message = f"{', '.join(orphans)} inferred from constituents that are not fitted; fit those too"
             raise AnalysisError(message)
-        return cls(fitted=fitted, companions=companions, trend=trend, nodal=nodal)
+        # Agencies' constants are made without minor lines, and so are fits to constituents asked for by name.
+        by_default = constituents is None and infer is None and nodal == "exact"
+        minor = minor_groups((*fitted, *inferred), fitted) if by_default else ()
+        return cls(fitted=fitted, companions=companions, minor=minor, trend=trend, nodal=nodal)
 
     @cached_property
     def names(self) -> tuple[str, ...]:
@@ -97,8 +104,9 @@ class Plan:
     @cached_property
     def mixing(self) -> Float:
         """See `mixing_matrix`."""
-        tie = np.zeros((len(self.names), len(self.fitted)), dtype=np.complex128)
-        tie[np.arange(len(self.names)), self.source] = self.ratio
+        source = np.concatenate([self.source, [self.fitted.index(group.main) for group in self.minor]]).astype(np.int64)
+        tie = np.zeros((len(source), len(self.fitted)), dtype=np.complex128)
+        tie[np.arange(len(source)), source] = np.concatenate([self.ratio, np.ones(len(self.minor))])
         return mixing_matrix(tie, self.flat)
 
     @cached_property
@@ -108,10 +116,21 @@ class Plan:
         return ("mean", "trend")[: self.flat] + tuple(parts)
 
     @cached_property
-    def speeds_deg_per_h(self) -> Float:
+    def fitted_speeds_deg_per_h(self) -> Float:
         """Speed of each fitted constituent. [degrees per hour]"""
-        return np.array([resolve(name).speed_deg_per_h for name in self.fitted])
+        return speeds_deg_per_h(self.fitted)
 
     def columns(self, reference_h: float) -> Columns:
         """The complex columns, the trend being zero at a time."""
-        return Columns.of_constituents(self.names, nodal=self.nodal, trend_about_h=reference_h if self.trend else None)
+        about = (reference_h,) if self.trend else ()
+        turn = np.concatenate([np.zeros(self.flat), *(np.deg2rad(speeds) for speeds in self._all_speeds)])
+
+        def at(t_h: Float) -> Complex:
+            flat = [np.ones((len(t_h), 1)), *((t_h[:, None] - zero) / HOURS_PER_YEAR for zero in about)]
+            return np.hstack([*flat, carriers(self.names, t_h, nodal=self.nodal), minor_carriers(self.minor, t_h)])
+
+        return Columns(turn, at, yearly_jumps=self.nodal != "exact")
+
+    @cached_property
+    def _all_speeds(self) -> tuple[Float, Float]:
+        return speeds_deg_per_h(self.names), minor_speeds_deg_per_h(self.minor)

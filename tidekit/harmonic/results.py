@@ -64,8 +64,8 @@ def close_pairs(plan: Plan, inverse: Float, span_h: float) -> tuple[ClosePair, .
     part = inverse[plan.flat : plan.flat + 2 * count, plan.flat : plan.flat + 2 * count]
     scale = np.sqrt(np.diag(part))
     size = np.abs(part / np.outer(scale, scale)).reshape(2, count, 2, count).max(axis=(0, 2))
-    order = np.argsort(plan.speeds_deg_per_h)
-    apart = np.diff(plan.speeds_deg_per_h[order]) * span_h / 360.0
+    order = np.argsort(plan.fitted_speeds_deg_per_h)
+    apart = np.diff(plan.fitted_speeds_deg_per_h[order]) * span_h / 360.0
     near = {
         (int(a), int(b))
         for (a, b), cycles in zip(pairwise(order), apart, strict=True)
@@ -74,13 +74,13 @@ def close_pairs(plan: Plan, inverse: Float, span_h: float) -> tuple[ClosePair, .
     far = {
         (int(a), int(b))
         for a, b in np.argwhere(size > _CORRELATED)
-        if plan.speeds_deg_per_h[a] < plan.speeds_deg_per_h[b]
+        if plan.fitted_speeds_deg_per_h[a] < plan.fitted_speeds_deg_per_h[b]
     }
     return tuple(
         ClosePair(
             plan.fitted[a],
             plan.fitted[b],
-            float((plan.speeds_deg_per_h[b] - plan.speeds_deg_per_h[a]) * span_h / 360.0),
+            float((plan.fitted_speeds_deg_per_h[b] - plan.fitted_speeds_deg_per_h[a]) * span_h / 360.0),
             float(size[a, b]),
         )
         for a, b in sorted(near | far)
@@ -210,5 +210,9 @@ class HarmonicFit:
         lines += ["=" * width, "Standard deviations follow the residual's spectrum beside each constituent."]
         if any(not np.isfinite(s) for s in constants.phase_lag_sd_deg):
             lines.append("A phase lag without sd belongs to an amplitude that cannot be told from zero.")
+        if self.plan.minor:
+            lines.append(
+                f"{len(self.plan.minor)} groups of minor lines follow fitted constituents by equilibrium ratios."
+            )
         lines += [str(pair) for pair in self.close_pairs]
         return "\n".join(lines)

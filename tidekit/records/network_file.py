@@ -259,7 +259,7 @@ class _Reader:
                     raise self.fail(f"gauge {number}", "id", message)
                 if _same_place(a, b):
                     message = f"{a.id!r} stands at the same place as {b.id!r}; mend the place or leave one out"
-                    key = "along_coast_km" if a.along_coast_km is not None else "latitude"
+                    key = "latitude" if a.latitude_deg is not None else "along_coast_km"
                     raise self.fail(f"gauge {number}", key, message)
 
     def _settings(self, table: Mapping[str, Any]) -> AuditSettings:
@@ -287,12 +287,14 @@ _NOT_TEXT = ("file", "latitude", "longitude", "along_coast_km", "offshore_km", "
 
 
 def _same_place(a: Station, b: Station) -> bool:
-    if None not in (a.along_coast_km, b.along_coast_km):
-        apart = abs(cast(float, a.along_coast_km) - cast(float, b.along_coast_km))
-        across = abs((a.offshore_km or 0.0) - (b.offshore_km or 0.0))
-        return apart < _SAME_PLACE_KM and across < _SAME_PLACE_KM
-    places = (a.latitude_deg, a.longitude_deg), (b.latitude_deg, b.longitude_deg)
-    return None not in places[0] and places[0] == places[1]
+    """Whether two gauges stand at one place: by their coordinates where both give them, else along the coast."""
+    coordinates = (a.latitude_deg, a.longitude_deg), (b.latitude_deg, b.longitude_deg)
+    if None not in (*coordinates[0], *coordinates[1]):
+        return coordinates[0] == coordinates[1]
+    if a.along_coast_km is None or b.along_coast_km is None:
+        return False
+    across = abs((a.offshore_km or 0.0) - (b.offshore_km or 0.0))
+    return abs(a.along_coast_km - b.along_coast_km) < _SAME_PLACE_KM and across < _SAME_PLACE_KM
 
 
 def _key_lines(text: str) -> dict[tuple[str, str], int]:

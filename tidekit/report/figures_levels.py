@@ -41,7 +41,7 @@ def draw_datum_ladder(table: DatumTable, axes: Axes) -> Axes:
     rows.sort(key=lambda n: float(table.height_m[n]))
     heights = table.height_m[rows]
     span = max(float(np.ptp(heights)), 0.1)
-    labels = _apart(heights, 0.055 * span)
+    labels = spread_labels(heights, 0.055 * span)
     for row, height, label in zip(rows, heights, labels, strict=True):
         reach = 1.96 * table.height_sd_m[row] if np.isfinite(table.height_sd_m[row]) else 0.0
         axes.plot([0.0, 0.5], [height, height], color=GOOD, linewidth=1.4)
@@ -56,7 +56,7 @@ def draw_datum_ladder(table: DatumTable, axes: Axes) -> Axes:
     return axes
 
 
-def _apart(heights: Float, least: float) -> Float:
+def spread_labels(heights: Float, least: float) -> Float:
     """Label heights in order, at least so far apart, moved as little as a pass up and a pass down need."""
     labels = np.array(heights, dtype=np.float64)
     for n in range(1, len(labels)):

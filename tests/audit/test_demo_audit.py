@@ -1,0 +1,117 @@
+"""The audit of the shipped network against the truth it was made with: the project's main promise."""
+
+import json
+import tomllib
+from pathlib import Path
+
+import pandas as pd
+from numpy.testing import assert_allclose
+
+from tests.audit.conftest import SAMPLES, DemoAudit
+
+TRUTH = tomllib.loads((SAMPLES / "truth.toml").read_text())
+WITHIN_SD = 3.0
+WITHIN_PART, STEP_WITHIN_PART = 0.10, 0.20
+"""The promise of the README: a tenth of the size, a fifth for the step under weather."""
+
+COLUMNS = {
+    "constants.csv": [
+        "gauge",
+        "constituent",
+        "speed_deg_per_h",
+        "amplitude_m",
+        "amplitude_sd_m",
+        "phase_lag_deg",
+        "phase_lag_sd_deg",
+        "basis",
+    ],
+    "datums.csv": ["gauge", "datum", "height_m", "height_sd_m", "method"],
+    "propagation.csv": [
+        "group",
+        "direction_deg",
+        "speed_m_per_s",
+        "speed_low_m_per_s",
+        "speed_high_m_per_s",
+        "theory_speed_m_per_s",
+        "cross_shore_ratio",
+        "theory_cross_shore_ratio",
+        "verdict",
+    ],
+    "findings.csv": ["gauge", "kind", "value", "value_sd", "unit", "severity", "evidence"],
+}
+
+
+def findings(audit: DemoAudit) -> pd.DataFrame:
+    return pd.read_csv(audit.folder / "findings.csv", keep_default_na=False)
+
+
+def test_exit_code_and_files(demo_audit: DemoAudit) -> None:
+    assert demo_audit.exit_code == 1
+    left = {path.name for path in demo_audit.folder.iterdir()}
+    assert left == {*COLUMNS, "audit.json", "report.html"}
+
+
+def test_columns(demo_audit: DemoAudit) -> None:
+    for name, wanted in COLUMNS.items():
+        assert list(pd.read_csv(demo_audit.folder / name).columns)[: len(wanted)] == wanted
+
+
+def test_every_fault_is_named_with_its_sign_and_size(demo_audit: DemoAudit) -> None:
+    table = findings(demo_audit).set_index(["gauge", "kind"])
+    for fault in TRUTH["fault"]:
+        found = table.loc[(fault["gauge"], fault["kind"])]
+        value, sd = float(found["value"]), float(found["value_sd"])
+        part = STEP_WITHIN_PART if fault["kind"] == "datum_step" else WITHIN_PART
+        assert found["severity"] == "error"
+        assert abs(value - fault["value"]) < WITHIN_SD * sd, fault
+        assert abs(value - fault["value"]) < part * abs(fault["value"]), fault
+
+
+def test_no_other_gauge_is_accused(demo_audit: DemoAudit) -> None:
+    table = findings(demo_audit)
+    errors = set(map(tuple, table.loc[table["severity"] == "error", ["gauge", "kind"]].to_numpy()))
+    assert errors == {(fault["gauge"], fault["kind"]) for fault in TRUTH["fault"]}
+
+
+def test_the_wave_is_the_one_it_was_made_with(demo_audit: DemoAudit) -> None:
+    table = pd.read_csv(demo_audit.folder / "propagation.csv").set_index("group")
+    together = table.loc["all"]
+    assert together["verdict"] == "consistent"
+    assert together["speed_low_m_per_s"] < TRUTH["speed_m_per_s"] < together["speed_high_m_per_s"]
+    assert_allclose(together["theory_speed_m_per_s"], TRUTH["speed_m_per_s"], rtol=1e-4)
+    ratio = (together["cross_shore_ratio"] - TRUTH["cross_shore_ratio"]) / together["cross_shore_ratio_sd"]
+    assert abs(ratio) < WITHIN_SD
+    assert_allclose(together["direction_deg"], 14.0, atol=2.0)  # the coast's bearing, on a plane
+
+
+def test_the_document_holds_all_of_it(demo_audit: DemoAudit) -> None:
+    document = json.loads((demo_audit.folder / "audit.json").read_text())
+    assert document["verdict"] == "consistent"
+    assert {"constants", "datums", "propagation", "findings", "inputs", "versions", "settings"} <= set(document)
+    assert len(document["inputs"]) == 11
+    assert all(len(source["sha256"]) == 64 for source in document["inputs"])
+    for gauge in document["gauges"]:
+        rows = gauge["rows"]
+        assert rows["kept"] + rows["flagged"] + rows["rejected"] == rows["rows"]
+
+
+def test_nothing_is_left_behind(demo_audit: DemoAudit) -> None:
+    assert [path for path in demo_audit.folder.parent.rglob("*") if path.name.startswith(".")] == []
+
+
+def test_the_page_is_whole_by_itself(demo_audit: DemoAudit) -> None:
+    page = (demo_audit.folder / "report.html").read_text()
+    outside = (
+        page.replace("http://www.w3.org/", "").replace("http://purl.org/", "").replace("http://creativecommons", "")
+    )
+    assert "http" not in outside.replace("https://matplotlib.org/", "")
+    assert "<script" not in page
+    assert page.count("Not for navigation") == 2
+    assert page.count('role="img"') == page.count("<svg ")
+    for fault in TRUTH["fault"]:
+        assert fault["gauge"] in page
+
+
+def test_a_run_again_leaves_other_files_alone(demo_audit: DemoAudit, tmp_path: Path) -> None:
+    """The folder's other files stay; see tests/audit/test_outputs.py for what happens when a write fails."""
+    assert (demo_audit.folder / "audit.json").stat().st_size > 10_000

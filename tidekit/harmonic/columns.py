@@ -18,11 +18,17 @@ from tidekit.constituents.modulation import year_start_h
 Float = NDArray[np.float64]
 Complex = NDArray[np.complex128]
 
-BLOCK_H = 360.0
-"""Longest block. M1 and L2, modulated fastest, then stray by at most 1e-4 of themselves from the chord, and by
-3e-6 on a block's average; M2 by 1e-7. The coefficients' error by block length is in tests/harmonic/test_grid.py."""
+SHORTEST_BLOCK_H, LONGEST_BLOCK_H = 240.0, 480.0
+"""Blocks of records of half a year and of 20 years. M1 and L2, modulated fastest, stray by 4e-5 of themselves from a chord over
+240 h, and by 1e-6 on its average; M2 by 1e-7. What is left repeats with the block and so averages out of longer
+records. The coefficients' error by block length is in tests/harmonic/test_grid.py."""
 HOURS_PER_YEAR = 8765.82
 """A tropical year. [hours]"""
+
+
+def block_h(span_h: float) -> float:
+    """Longest block for a record of some length: some 365 of them in ten to twenty years, 16 in a month. [hours]"""
+    return float(np.clip(span_h / 365.0, min(span_h / 16.0, SHORTEST_BLOCK_H), LONGEST_BLOCK_H))
 
 
 @dataclass(frozen=True, eq=False)
@@ -37,8 +43,8 @@ class Columns:
     """Whether the slow factors jump at each New Year (UTC), as they do under the mid-year convention."""
 
     def edges_h(self, start_h: float, end_h: float) -> Float:
-        """Block edges from a start past an end, none further apart than `BLOCK_H`, and one at each jump."""
-        count = int((end_h - start_h) // BLOCK_H) + 1
+        """Block edges from a start past an end, none further apart than `block_h`, and one at each jump."""
+        count = int((end_h - start_h) // block_h(end_h - start_h)) + 1
         edges = np.linspace(start_h, max(end_h, start_h + 1.0), count + 1)
         if not self.yearly_jumps:
             return edges

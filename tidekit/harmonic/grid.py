@@ -23,7 +23,7 @@ from itertools import chain
 import numpy as np
 from numpy.typing import NDArray
 
-from tidekit.harmonic.columns import BLOCK_H, Columns, Complex, Float
+from tidekit.harmonic.columns import Columns, Complex, Float, block_h
 
 Mask = NDArray[np.bool_]
 
@@ -69,7 +69,7 @@ class GridTables:
         turn = columns.turn_rad_per_h
         width = _window_width(step_h, count)
         windows = -(-count // width)
-        blocks = max(-(-windows * width * step_h // BLOCK_H), 1.0)
+        blocks = max(-(-windows * width * step_h // block_h(count * step_h)), 1.0)
         in_block = int(-(-windows // blocks))
         blocks = -(-windows // in_block)
         edges = start_h + np.arange(blocks + 1, dtype=np.float64) * (in_block * width * step_h)

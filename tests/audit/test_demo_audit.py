@@ -1,8 +1,8 @@
 """The audit of the shipped network against the truth it was made with: the project's main promise."""
 
 import json
+import re
 import tomllib
-from pathlib import Path
 
 import pandas as pd
 from numpy.testing import assert_allclose
@@ -101,17 +101,11 @@ def test_nothing_is_left_behind(demo_audit: DemoAudit) -> None:
 
 def test_the_page_is_whole_by_itself(demo_audit: DemoAudit) -> None:
     page = (demo_audit.folder / "report.html").read_text()
-    outside = (
-        page.replace("http://www.w3.org/", "").replace("http://purl.org/", "").replace("http://creativecommons", "")
-    )
-    assert "http" not in outside.replace("https://matplotlib.org/", "")
+    # Names of XML vocabularies look like addresses and are not fetched.
+    allowed = {"http://www.w3.org", "http://purl.org", "http://creativecommons.org"}
+    assert set(re.findall(r"https?://[^/\"' ]+", page)) <= allowed
     assert "<script" not in page
     assert page.count("Not for navigation") == 2
     assert page.count('role="img"') == page.count("<svg ")
     for fault in TRUTH["fault"]:
         assert fault["gauge"] in page
-
-
-def test_a_run_again_leaves_other_files_alone(demo_audit: DemoAudit, tmp_path: Path) -> None:
-    """The folder's other files stay; see tests/audit/test_outputs.py for what happens when a write fails."""
-    assert (demo_audit.folder / "audit.json").stat().st_size > 10_000

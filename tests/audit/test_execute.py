@@ -14,7 +14,7 @@ HEAD = '[network]\nname = "n"\n[coast]\nside = "left"\ndepth_m = 60.0\n'
 
 
 def gauge_table(gauge: str, source: str, along: float = 0.0) -> str:
-    return f'[[gauge]]\nid = "{gauge}"\n{source}\nlatitude = -41.0\nlongitude = 88.0\nalong_coast_km = {along}\n'
+    return f'[[gauge]]\nid = "{gauge}"\n{source}\nlatitude = {-41.0 + along / 111.0}\nlongitude = 88.0\nalong_coast_km = {along}\n'
 
 
 def run(tmp_path: Path, text: str, *options: str) -> int:
@@ -65,7 +65,7 @@ def test_gauges_given_by_constants_make_a_wave(tmp_path: Path) -> None:
         hours = along * 1e3 / 24.26108 / 3600.0
         rows = [f"{name},1.0,{(40.0 + speed * hours) % 360.0:.4f}" for name, speed in speeds.items()]
         (tmp_path / f"g{n}.csv").write_text("constituent,amplitude_m,phase_lag_deg\n" + "\n".join(rows) + "\n")
-        text += gauge_table(f"g{n}", f'constants = "g{n}.csv"', along).replace("-41.0", f"{-41.0 + along / 111.0}")
+        text += gauge_table(f"g{n}", f'constants = "g{n}.csv"', along)
     assert run(tmp_path, text) == 0
     document = json.loads((tmp_path / "out/audit.json").read_text())
     together = document["propagation"][-1]

@@ -1,4 +1,4 @@
-"""The whole audit on ten real gauges, two years, from the raw exports: see ../shared/real/README.md for their sources."""
+"""The whole audit on ten real gauges, two years, from the raw exports of NOAA and the Canadian Hydrographic Service."""
 
 import json
 from pathlib import Path

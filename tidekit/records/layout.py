@@ -6,46 +6,73 @@ import json
 import tomllib
 from dataclasses import dataclass, fields, replace
 from pathlib import Path
-from typing import Any
+from typing import Any, Literal, get_args
 
 from tidekit.errors import RecordError
 from tidekit.files import write_text
 from tidekit.records.units import unit_named
 from tidekit.records.zones import zone_named
 
-BLANKS = "blanks"
-"""Delimiter of columns parted by runs of blanks."""
-MISSING_MARKS = ("", "-", "--", "NA", "NaN", "nan", "null", "-99", "-99.99", "-999", "9999", "-9999")
-"""What exports write where there is no value (common practice, no source)."""
-DATE_ORDERS = ("year-month-day", "day-month-year", "month-day-year")
+BLANKS, FIXED = "blanks", "fixed"
+"""Delimiters that are no character: runs of blanks, and columns that begin at fixed places."""
+MISSING_MARKS = ("", "-", "--", "---", "*", "NA", "N/A", "NaN", "nan", "null", "NULL", "None", "none", "missing", "M")
+"""Texts that exports write where there is no value (common practice, no source)."""
+MISSING_NUMBERS = ("-99", "-99.9", "-99.99", "-99.999", "-999", "-9999", "9999", "99999", "-32768")
+"""Numbers that exports write where there is no value (common practice, no source)."""
+DateOrder = Literal["year-month-day", "day-month-year", "month-day-year", "year-day-of-year"]
+DATE_ORDERS: tuple[DateOrder, ...] = get_args(DateOrder)
+TIME_PARTS = {
+    "stamp": "date and clock together",
+    "date": "date",
+    "clock": "hours and minutes, as 5:30, 05:30:00, 0530 or 5:30 PM",
+    "year": "year",
+    "month": "month, 1 to 12",
+    "day": "day of the month",
+    "day_of_year": "day of the year from 1, with a fraction or without",
+    "hour": "hour, with a fraction or without",
+    "minute": "minute",
+    "second": "second",
+    "hhmm": "hours and minutes as one number, such as 530 for half past five",
+    "epoch_s": "seconds since 1970-01-01 UTC",
+    "epoch_ms": "milliseconds since 1970-01-01 UTC",
+}
+"""What a column of the time may hold."""
 
 
 @dataclass(frozen=True, kw_only=True)
 class Layout:
-    """How one export is written. Columns count from 1."""
+    """How one export is written. Lines and columns count from 1."""
 
     delimiter: str
-    """One character, or ``blanks`` for runs of blanks."""
+    """One character, ``blanks`` for runs of blanks, or ``fixed`` for columns that begin at `edges`."""
     first_row: int
-    """Line of the first data row, from 1."""
-    columns: int
-    """Cells of a whole row; a row may lack empty cells at its end."""
+    """Line of the first data row."""
     time_columns: tuple[int, ...]
-    """Column of the time; two where date and clock stand apart."""
+    """Columns that make up the time."""
     height_column: int
     """Column of the height."""
-    date_order: str
-    """One of `DATE_ORDERS`."""
+    time_parts: tuple[str, ...] = ("stamp",)
+    """What each of `time_columns` holds, of `TIME_PARTS`."""
+    date_order: DateOrder = "year-month-day"
+    """Order of year, month and day in dates."""
     unit: str | None = None
     """Unit of the heights, one of `units.METRES`."""
     time_zone: str | None = None
     """Zone of the times; None where each time carries its offset, or none is known yet."""
     decimal: str = "."
     """Decimal mark, ``.`` or ``,``."""
-    missing: tuple[str, ...] = MISSING_MARKS
+    missing: tuple[str, ...] = MISSING_MARKS + MISSING_NUMBERS
     """Texts that stand for no value; numbers among them match by value."""
     comment: str = "#"
-    """A line that begins with it is no row."""
+    """A line that begins with it is no row; empty for none."""
+    edges: tuple[int, ...] = ()
+    """First character of each column, where the delimiter is ``fixed``."""
+    quality_column: int | None = None
+    """Column of the exporter's own mark of quality, if it shall count."""
+    quality_suspect: tuple[str, ...] = ()
+    """Its marks for heights in doubt: flag 3."""
+    quality_bad: tuple[str, ...] = ()
+    """Its marks for heights not to be used: flag 4."""
     vertical_reference: str | None = None
     """What the heights are above, in the export's words."""
 
@@ -59,12 +86,13 @@ class Layout:
 
     def describe(self) -> str:
         """One line for people."""
-        times = " and ".join(str(column) for column in self.time_columns)
         zone = self.time_zone or "offset in each time"
-        parted = {",": "commas", ";": "semicolons", "\t": "tabs", BLANKS: "blanks"}.get(self.delimiter, self.delimiter)
+        where = ", ".join(f"{part} in column {n}" for n, part in zip(self.time_columns, self.time_parts, strict=True))
+        parted = {",": "commas", ";": "semicolons", "\t": "tabs", BLANKS: "runs of blanks", FIXED: "fixed places"}
         return (
-            f"columns parted by {parted}, rows from line {self.first_row}, time in column {times} "
-            f"({self.date_order}, {zone}), height in column {self.height_column} ({self.unit}, {self.decimal!r})"
+            f"columns parted by {parted.get(self.delimiter, self.delimiter)}, rows from line {self.first_row}, "
+            f"time ({where}; {self.date_order}; {zone}), height in column {self.height_column} "
+            f"({self.unit or 'no unit'}, decimal mark {self.decimal})"
         )
 
 
@@ -76,10 +104,10 @@ def write_layout(layout: Layout, path: str | Path) -> None:
     InputError
         If the file cannot be written.
     """
-    lines = ["# Layout of a gauge export; columns count from 1."]
+    lines = ["# Layout of a gauge export; lines and columns count from 1."]
     for field in fields(layout):
         value = getattr(layout, field.name)
-        if value is not None:
+        if value not in (None, ()):
             # JSON's strings, numbers and lists are TOML's.
             lines.append(f"{field.name} = {json.dumps(list(value) if isinstance(value, tuple) else value)}")
     write_text(path, "\n".join(lines) + "\n")
@@ -95,34 +123,74 @@ def read_layout(path: str | Path) -> Layout:
     """
     try:
         table: dict[str, Any] = tomllib.loads(Path(path).read_text(encoding="utf-8"))
-    except OSError as error:
-        message = f"cannot read this layout ({error.strerror}); check the path"
+    except (OSError, UnicodeDecodeError) as error:
+        message = f"cannot read this layout ({getattr(error, 'strerror', None) or 'not UTF-8'}); check the path"
         raise RecordError(message, path=path) from error
-    except (tomllib.TOMLDecodeError, UnicodeDecodeError) as error:
+    except tomllib.TOMLDecodeError as error:
         message = f"this layout is not TOML: {error}"
         raise RecordError(message, path=path) from error
-    kinds = {field.name: str(field.type) for field in fields(Layout)}
-    for key, value in table.items():
-        if key not in kinds:
-            message = f"unknown key; wanted one of {', '.join(kinds)}"
-            raise RecordError(message, path=path, key=key)
-        wanted: type = tuple if kinds[key].startswith("tuple") else int if kinds[key] == "int" else str
-        found = tuple(value) if isinstance(value, list) else value
-        if not isinstance(found, wanted):
-            message = (
-                f"is {value!r}; wanted {'a list' if wanted is tuple else 'a number' if wanted is int else 'a text'}"
-            )
-            raise RecordError(message, path=path, key=key)
-        table[key] = found
+    values: dict[str, Any] = {key: _checked(key, value, path) for key, value in table.items()}
     try:
-        layout = Layout(**table)
+        layout = Layout(**values)
     except TypeError as error:
-        message = f"this layout lacks a key: {error}"
+        message = f"this layout lacks a key: {str(error).partition(': ')[2] or error}"
         raise RecordError(message, path=path) from error
-    if layout.date_order not in DATE_ORDERS:
-        message = f"is {layout.date_order!r}; wanted one of {', '.join(DATE_ORDERS)}"
-        raise RecordError(message, path=path, key="date_order")
-    if min(layout.first_row, layout.height_column, *layout.time_columns) < 1 or not 1 <= len(layout.time_columns) <= 2:
-        message = "lines and columns count from 1, and the time has one or two columns"
-        raise RecordError(message, path=path)
-    return layout.declared(time_zone=layout.time_zone, unit=layout.unit)
+    for key, message in _faults(layout):
+        raise RecordError(message, path=path, key=key)
+    try:
+        return layout.declared(time_zone=layout.time_zone, unit=layout.unit)
+    except RecordError as error:
+        raise RecordError(str(error), path=path) from error
+
+
+_NUMBERS = ("first_row", "height_column", "quality_column")
+_LISTS = {"time_columns": int, "edges": int, "time_parts": str, "missing": str}
+_LISTS |= {"quality_suspect": str, "quality_bad": str}
+
+
+def _checked(key: str, value: object, path: str | Path) -> object:
+    """A value of the kind that its key wants."""
+    known = [field.name for field in fields(Layout)]
+    if key not in known:
+        message = f"unknown key; wanted one of {', '.join(known)}"
+        raise RecordError(message, path=path, key=key)
+    if key in _LISTS:
+        kind = _LISTS[key]
+        if isinstance(value, list) and all(type(entry) is kind for entry in value):
+            return tuple(value)
+        wanted = f"a list of {'numbers' if kind is int else 'texts'}"
+    elif key in _NUMBERS:
+        if type(value) is int:
+            return value
+        wanted = "a whole number"
+    elif isinstance(value, str):
+        return value
+    else:
+        wanted = "a text"
+    message = f"is {value!r}; wanted {wanted}"
+    raise RecordError(message, path=path, key=key)
+
+
+def _faults(layout: Layout) -> list[tuple[str, str]]:
+    """Keys whose values are impossible, and why."""
+    whole = len(layout.time_columns) == len(layout.time_parts) > 0
+    named = all(part in TIME_PARTS for part in layout.time_parts)
+    delimiter = len(layout.delimiter) == 1 and layout.delimiter.isascii() and layout.delimiter not in '\r\n"'
+    columns = min(layout.height_column, layout.quality_column or 1, *layout.time_columns) if whole else 0
+    last = max(layout.height_column, layout.quality_column or 1, *layout.time_columns) if whole else 0
+    checks = (
+        ("date_order", layout.date_order in DATE_ORDERS, f"is no date order; wanted one of {', '.join(DATE_ORDERS)}"),
+        ("decimal", layout.decimal in (".", ","), 'is no decimal mark; wanted "." or ","'),
+        ("time_parts", whole and named, f"wanted one of {', '.join(TIME_PARTS)} for each of time_columns"),
+        ("delimiter", delimiter or layout.delimiter in (BLANKS, FIXED), 'wanted one character, "blanks" or "fixed"'),
+        ("decimal", layout.decimal != layout.delimiter, "the decimal mark cannot part columns too; give another"),
+        ("first_row", layout.first_row >= 1, "lines count from 1"),
+        ("time_columns", columns >= 1 and last < 10_000, "columns count from 1 and are fewer than 10000"),
+        (
+            "edges",
+            layout.delimiter != FIXED or (len(layout.edges) >= last and sorted(set(layout.edges)) == [*layout.edges]),
+            'the delimiter "fixed" wants the first character of each column, in order',
+        ),
+        ("edges", min(layout.edges, default=1) >= 1, "characters count from 1"),
+    )
+    return [(key, message) for key, sound, message in checks if not sound]

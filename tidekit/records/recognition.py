@@ -8,25 +8,25 @@ from __future__ import annotations
 
 import re
 from collections import Counter
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
-import pandas as pd
 
 from tidekit.errors import RecordError
-from tidekit.records.cells import TIME, parse_times, split, time_text
-from tidekit.records.layout import BLANKS, Layout
-from tidekit.records.units import unit_in
+from tidekit.records.cutting import cut, split
+from tidekit.records.date_order import Settled, by_validity
+from tidekit.records.decoding import Export
+from tidekit.records.headers import Said, reference_said, unit_said, zone_said
+from tidekit.records.height_column import header_rows, height_column, is_number, labels_of
+from tidekit.records.layout import BLANKS, DATE_ORDERS, FIXED, DateOrder, Layout
+from tidekit.records.time_columns import TimePlace, candidates, clocks, columns_of, enough, steps_are_sound
+from tidekit.records.times import read_times
 from tidekit.records.zones import zone_in
 
-_LOOK = 400
+_LOOK = 500
 """Lines that show the layout."""
 _DELIMITERS = (";", "\t", ",", "|", BLANKS)
-_COMMENTS = ("#", "%", "//", "*")
-_NUMBER = re.compile(r"^[+-]?(\d+([.,]\d*)?|[.,]\d+)([eE][+-]?\d+)?$")
-_HEIGHT_WORDS = ("height", "level", "slev", "wlev", "water", "tide", "elev", "stage", "gauge", "value", "pegel", "h")
-_OTHER_WORDS = ("sigma", "temp", "press", "atms", "psal", "sal", "flag", "qual", "qc", "wind", "volt", "batt", "std")
-_REFERENCE = re.compile(r"(?:datum|vertical.reference)\s*[:,=;]?\s*([A-Za-z0-9 .\-]+)", re.IGNORECASE)
+_COMMENTS = ("#", "%", "//", "*", "!")
 
 
 @dataclass(frozen=True)
@@ -34,22 +34,39 @@ class Recognised:
     """A layout and why."""
 
     layout: Layout
-    """What was found; unit and zone may be None, if neither file nor declaration says."""
+    """What was found; unit and zone are None where the export does not say."""
     evidence: tuple[str, ...]
     """One sentence a choice."""
     columns: tuple[str, ...]
-    """Column names, or empty."""
+    """Names of columns, or empty."""
+    unit: Said
+    """What the export says of its unit."""
+    zone: Said
+    """What the export says of its time zone."""
 
 
-def recognise(lines: list[str], *, path: str, column: str | None = None) -> Recognised:
+@dataclass(frozen=True)
+class _Table:
+    """A way to see the first lines as a table."""
+
+    delimiter: str
+    edges: tuple[int, ...]
+    place: TimePlace
+    lines: tuple[int, ...]
+    """Line numbers of rows, from the first that holds a time."""
+    rows: list[list[str]]
+    """Their cells."""
+    names: list[str]
+    """Names of columns, or empty."""
+
+
+def recognise(export: Export, *, column: str | None = None) -> Recognised:
     """Find the layout of an export.
 
     Parameters
     ----------
-    lines : list of str
-        The whole file.
-    path : str
-        Its name, for errors.
+    export : Export
+        The opened file.
     column : str, optional
         Name or number of the height column.
 
@@ -63,217 +80,211 @@ def recognise(lines: list[str], *, path: str, column: str | None = None) -> Reco
     RecordError
         If no column holds times or heights, or two readings are possible.
     """
-    delimiter, rows, time_columns = _table(lines, path)
-    first = rows[0]
-    header = _header(lines, first, delimiter)
-    head = lines[: first - 1]
-    comment = next((mark for mark in _COMMENTS if any(line.startswith(mark) for line in lines[:_LOOK])), "#")
-    cells = [split(lines[row - 1], delimiter) for row in rows]
-    decimal = _decimal(cells, delimiter, time_columns)
-    width = Counter(len(row) for row in cells).most_common(1)[0][0]
-    height = _height_column(cells, header, time_columns, column, decimal, path)
-    order, order_evidence = _date_order(lines, rows, delimiter, time_columns, path)
-    name = header[height - 1] if height <= len(header) else ""
-    evidence = [
-        f"rows from line {first}: {len(rows)} of the first {min(len(lines), _LOOK)} lines hold a time and numbers",
-        f"heights in column {height}" + (f", named {name!r}" if name else ""),
-        order_evidence,
-    ]
-    unit, where = _unit(name, header, head)
-    evidence.append(f"unit {unit} from {where}" if unit else "no unit stated")
-    zone, where = _zone(head, header, time_columns, cells)
-    evidence.append(f"time zone {zone or where}" + (f" from {where}" if zone else ""))
-    reference = next((found[1].strip() for line in head if (found := _REFERENCE.search(line.strip("#% ")))), None)
+    path = str(export.path)
+    head = list(export.head[:_LOOK])
+    table = _table(head, path)
+    first = table.lines[0]
+    above = head[: first - 1]
+    labels = labels_of(header_rows(above, table.delimiter, table.edges), table.names)
+    decimal = _decimal(table)
+    found = height_column(table.rows, table.names, labels, table.place.columns, column, path)
+    unit = unit_said(labels[found.column - 1] if found.column <= len(labels) else "", above)
+    time_labels = [labels[n - 1] for n in table.place.columns if n <= len(labels)]
     layout = Layout(
-        delimiter=delimiter,
+        delimiter=table.delimiter,
+        edges=table.edges,
         first_row=first,
-        columns=width,
-        time_columns=time_columns,
-        height_column=height,
-        date_order=order,
-        unit=unit,
-        time_zone=zone,
+        time_columns=table.place.columns,
+        time_parts=table.place.parts,
+        height_column=found.column,
+        unit=unit.value,
         decimal=decimal,
-        comment=comment,
-        vertical_reference=reference,
+        comment=next((mark for mark in _COMMENTS if any(line.lstrip().startswith(mark) for line in above)), "#"),
+        vertical_reference=reference_said(above, labels[found.column - 1] if found.column <= len(labels) else ""),
     )
-    return Recognised(layout, tuple(evidence), tuple(header))
+    settled = _order(export, layout, table, path)
+    zone = _zone(above, time_labels, table, layout.date_order)
+    layout = replace(layout, date_order=settled.orders[0], time_zone=zone.value)
+    evidence = [
+        f"rows from line {first}: {len(table.lines)} of the first {len(head)} lines hold a time and a number",
+        _time_evidence(table),
+        settled.evidence,
+        found.evidence,
+        f"unit {unit.value} from {unit.where}" if unit.value else unit.fault or unit.where,
+        f"time zone {zone.value} from {zone.where}" if zone.value else zone.fault or zone.where,
+    ]
+    if export.packing != "plain" or export.encoding != "utf-8":
+        evidence.insert(0, f"{export.packing} file, text in {export.encoding}")
+    return Recognised(layout, tuple(filter(None, evidence)), tuple(table.names), unit, zone)
 
 
-def _table(lines: list[str], path: str) -> tuple[str, list[int], tuple[int, ...]]:
-    """Delimiter, lines (from 1) of rows among the first, and columns of their time."""
-    best: tuple[int, str, list[int], tuple[int, ...]] = (0, "", [], ())
+def _table(head: list[str], path: str) -> _Table:
+    """The delimiter and time columns under which most lines are rows."""
+    best: _Table | None = None
+    dates_only = False
     for delimiter in _DELIMITERS:
-        places: dict[tuple[int, ...], list[int]] = {}
-        for number, line in enumerate(lines[:_LOOK], 1):
-            found = _time_place(split(line, delimiter))
-            if found:
-                places.setdefault(found, []).append(number)
-        for columns, rows in places.items():
-            if len(rows) > best[0]:
-                best = (len(rows), delimiter, rows, columns)
-    if not best[0]:
-        message = (
-            f"no time column: none of the first {min(len(lines), _LOOK)} lines holds a date with a clock and a number; "
-            "wanted rows such as 2021-03-04 05:00,1.234, or declare a layout"
+        table, dates = _table_by(head, delimiter, ())
+        dates_only |= dates
+        if table is not None and (best is None or len(table.lines) > len(best.lines)):
+            best = table
+    if best is not None and best.delimiter == BLANKS:
+        best = _by_places(head, best) or best
+    if best is not None:
+        return best
+    shown = "dates without a clock" if dates_only else "no date with a clock beside a number"
+    message = (
+        f"no time column: the first {min(len(head), _LOOK)} lines hold {shown}; "
+        "wanted rows such as 2021-03-04 05:00,1.234, or a declared layout (--layout)"
+    )
+    raise RecordError(message, path=path, line=1)
+
+
+def _table_by(head: list[str], delimiter: str, edges: tuple[int, ...]) -> tuple[_Table | None, bool]:
+    """The table that a delimiter makes, if it makes one; and whether it shows dates without a clock."""
+    numbered = [(n, split(line, delimiter, edges)) for n, line in enumerate(head, 1) if line.strip()]
+    wide = [(n, cells) for n, cells in numbered if len(cells) > 1]
+    if not wide:
+        return None, False
+    rows = [cells for _, cells in wide]
+    guess = next((n for n, (_, cells) in enumerate(wide) if sum(map(is_number, cells)) * 2 > len(cells) - 2), 0)
+    names = _names([cells for _, cells in wide[:guess]], Counter(len(c) for c in rows).most_common(1)[0][0])
+    # Only lines that hold a number beside the time can be rows.
+    body = [(n, cells) for n, cells in wide if any(is_number(cell) for cell in cells)]
+    texts = [cells for _, cells in body]
+    dates = False
+    for place in candidates(texts, names):
+        columns = columns_of(texts, place.columns)
+        found = np.any([~np.isnat(clocks(columns, place, order)) for order in DATE_ORDERS], axis=0)
+        beside = np.array(
+            [any(is_number(c) for n, c in enumerate(cells, 1) if n not in place.columns) for cells in texts]
         )
-        raise RecordError(message, path=path, line=1)
-    return best[1], best[2], best[3]
+        found &= beside
+        if not enough(found) or not _plausible(columns, place, found):
+            continue
+        first = int(np.argmax(found))
+        lines = [n for n, _ in body]
+        names = _names(
+            [split(x.lstrip("#%*!/ "), delimiter, edges) for x in head[: lines[first] - 1]], len(texts[first])
+        )
+        keep = np.flatnonzero(found)
+        return _Table(delimiter, edges, place, tuple(lines[n] for n in keep), [texts[n] for n in keep], names), False
+    return None, dates
 
 
-def _time_place(cells: list[str]) -> tuple[int, ...] | None:
-    """Columns of a row's time; None where it has none or nothing beside it."""
-    for start in range(min(len(cells), 4)):
-        for width in (1, 2):
-            columns = tuple(range(start + 1, start + 1 + width))
-            text = time_text(cells, columns)
-            match = TIME.match(text) if text else None
-            rest = len(cells) - start - width
-            if match and match["hour"] and rest > 0:
-                return columns
-    return None
+def _plausible(columns: list[list[str]], place: TimePlace, found: np.ndarray) -> bool:
+    """Plain numbers are a time only where they run on as one."""
+    if place.parts[0] not in ("year", "epoch_s", "epoch_ms"):
+        return True
+    times = clocks(columns, place, "year-month-day")[found]
+    return len(times) < 2 or steps_are_sound(times)
 
 
-def _header(lines: list[str], first: int, delimiter: str) -> list[str]:
-    for line in reversed(lines[max(first - 4, 0) : first - 1]):
-        cells = split(line.lstrip("#%*/ "), delimiter)
-        if len(cells) > 1 and not any(_NUMBER.match(cell) for cell in cells):
+def _names(above: list[list[str]], width: int) -> list[str]:
+    """Names of columns: the nearest line of words above the rows that is as wide, or nearly."""
+    for cells in reversed(above[-6:]):
+        words = [cell for cell in cells if re.search(r"[A-Za-z]", cell) and not is_number(cell)]
+        if len(cells) > 1 and len(words) * 2 > len(cells) and len(cells) >= width - max(1, width // 3):
+            if all(re.fullmatch(r"[\[(]?[A-Za-z°%/]{1,7}[\])]?", cell) and labels_unit(cell) for cell in words):
+                continue  # a line of units
             return cells
     return []
 
 
-def _decimal(cells: list[list[str]], delimiter: str, time_columns: tuple[int, ...]) -> str:
-    if delimiter == ",":
+def labels_unit(cell: str) -> bool:
+    """Whether a cell names a unit or a kind of value rather than a column."""
+    return cell.strip("[]()").lower() in {
+        "m",
+        "cm",
+        "mm",
+        "ft",
+        "metres",
+        "meters",
+        "feet",
+        "utc",
+        "ts",
+        "rn",
+        "avg",
+        "smp",
+        "v",
+        "c",
+        "degc",
+    }
+
+
+def _by_places(head: list[str], table: _Table) -> _Table | None:
+    """The same table cut at fixed places, where blank cells make the number of cells vary."""
+    if len({len(cells) for cells in table.rows}) == 1:
+        return None
+    lines = [line for n, line in enumerate(head, 1) if n >= table.lines[0] and line.strip()]
+    width = max(map(len, lines))
+    used = np.array([[c not in " \t" for c in line.ljust(width)] for line in lines]).any(axis=0)
+    starts = np.flatnonzero(np.diff(np.concatenate(([False], used)).astype(np.int8)) == 1)
+    if "\t" in "".join(lines) or len(starts) < 2:
+        return None
+    return _table_by(head, FIXED, tuple(int(start) + 1 for start in starts))[0]
+
+
+def _decimal(table: _Table) -> str:
+    if table.delimiter == "," and not any("," in cell for row in table.rows for cell in row):
         return "."
-    rest = [cell for row in cells for cell in row[max(time_columns) :]]
-    commas = sum(bool(re.fullmatch(r"[+-]?\d+,\d+", cell)) for cell in rest)
-    points = sum(bool(re.fullmatch(r"[+-]?\d+\.\d+", cell)) for cell in rest)
+    cells = [cell for row in table.rows for n, cell in enumerate(row, 1) if n not in table.place.columns]
+    commas = sum(bool(re.fullmatch(r"[+-]?(\d+|\d{1,3}(\.\d{3})+),\d+", cell)) for cell in cells)
+    points = sum(bool(re.fullmatch(r"[+-]?\d*\.\d+", cell)) for cell in cells)
     return "," if commas > points else "."
 
 
-def _height_column(
-    cells: list[list[str]],
-    header: list[str],
-    time_columns: tuple[int, ...],
-    column: str | None,
-    decimal: str,
-    path: str,
-) -> int:
-    width = max(len(row) for row in cells)
-    if column is not None:
-        names = [name.lower() for name in header]
-        if column.lower() in names:
-            return names.index(column.lower()) + 1
-        if column.isdigit() and 1 <= int(column) <= width:
-            return int(column)
-        message = f"no column {column!r}; there are {', '.join(header) or f'columns 1 to {width}'}"
-        raise RecordError(message, path=path)
-    numeric = [
-        place
-        for place in range(1, width + 1)
-        if place not in time_columns and any(len(row) >= place and _NUMBER.match(row[place - 1]) for row in cells)
+def _order(export: Export, layout: Layout, table: _Table, path: str) -> Settled:
+    """Order of dates: by the first rows, then by all rows, then by even steps, or ask."""
+    if not any(part in ("stamp", "date") for part in table.place.parts):
+        return Settled(("year-month-day",), "")
+    columns = columns_of(table.rows, table.place.columns)
+    clock = {order: clocks(columns, table.place, order) for order in DATE_ORDERS}
+    settled = by_validity(clock, np.array(table.lines), path)
+    if len(settled.orders) == 1:
+        return settled
+    even = [order for order in settled.orders if steps_are_sound(clock[order])]
+    for block in export.blocks():
+        cells = cut(block, layout, layout.time_columns)
+        whole = {
+            order: read_times(
+                [cells.columns[n][~cells.short] for n in layout.time_columns], layout.time_parts, order
+            ).clock
+            for order in settled.orders
+        }
+        later = by_validity(whole, cells.line[~cells.short], path)
+        if len(later.orders) == 1:
+            return later
+    if len(even) == 1 and len({str(day)[:10] for day in clock[even[0]]}) > 1:
+        return Settled((even[0],), f"dates read {even[0]}: only so do the rows follow one another in even steps")
+    text = " ".join(cell[0] for cell in columns)
+    message = (
+        f"the date in {text!r} can be read {' or '.join(settled.orders)} and no row settles it; "
+        "declare date_order in a layout (--save-layout writes one to start from)"
+    )
+    raise RecordError(message, path=path, line=table.lines[0])
+
+
+def _zone(above: list[str], labels: list[str], table: _Table, order: DateOrder) -> Said:
+    if table.place.parts[0] in ("epoch_s", "epoch_ms"):
+        return Said(None, "times are seconds since 1970 UTC")
+    columns = columns_of(table.rows[:1], table.place.columns)
+    cells = [split_cell.encode("latin-1", "replace") for column in columns for split_cell in column]
+    if re.search(rb"(?<=\d)\s?(?:Z|UTC|GMT|[+-]\d\d(?::?\d\d)?)$", cells[-1]) and b":" in cells[-1]:
+        return Said(None, "each time carries its offset")
+    said = zone_said(above, labels)
+    if said.value:
+        return said
+    for n in range(1, len(table.rows[0]) + 1):
+        words = {row[n - 1] for row in table.rows if len(row) >= n}
+        if n not in table.place.columns and len(words) == 1 and (zone := zone_in(words.pop())):
+            return Said(zone, f"column {n}")
+    return said
+
+
+def _time_evidence(table: _Table) -> str:
+    named = [table.names[n - 1] if n <= len(table.names) else "" for n in table.place.columns]
+    parts = [
+        f"{part} in column {n}" + (f" ({name!r})" if name else "")
+        for n, part, name in zip(table.place.columns, table.place.parts, named, strict=True)
     ]
-    named = {place: header[place - 1].lower() for place in numeric if place <= len(header)}
-    numeric = [place for place in numeric if not any(word in named.get(place, "") for word in _OTHER_WORDS)]
-    for word in _HEIGHT_WORDS:
-        hits = [p for p in numeric if (word in named.get(p, "") if len(word) > 1 else named.get(p) == word)]
-        if len(hits) == 1:
-            return hits[0]
-        if len(hits) > 1 and word in ("height", "level", "slev", "wlev"):
-            several = ", ".join(header[place - 1] for place in hits)
-            message = f"several columns may hold the height ({several}); declare the column"
-            raise RecordError(message, path=path)
-    # A column without a name, or one with any name at all if it is the only one, holds the height.
-    if len(numeric) == 1 or (numeric and not named):
-        if len(numeric) > 1 and not header:
-            message = f"columns {', '.join(map(str, numeric))} hold numbers and none has a name; declare the column"
-            raise RecordError(message, path=path)
-        return numeric[0]
-    message = (
-        f"several columns hold numbers ({', '.join(named.values())}); declare the column"
-        if numeric
-        else "no column beside the time holds numbers; wanted heights"
-    )
-    raise RecordError(message, path=path)
-
-
-def _date_order(
-    lines: list[str], rows: list[int], delimiter: str, time_columns: tuple[int, ...], path: str
-) -> tuple[str, str]:
-    day_first = month_first = year_first = 0
-    for number in range(rows[0], len(lines) + 1):
-        match = TIME.match(time_text(split(lines[number - 1], delimiter), time_columns) or "")
-        if match is None:
-            continue
-        a, b = match["a"], match["b"]
-        if len(a) == 4:
-            year_first = year_first or number
-        elif int(a) > 12:
-            day_first = day_first or number
-        elif int(b) > 12:
-            month_first = month_first or number
-    if sum(map(bool, (day_first, month_first, year_first))) > 1:
-        seen = {"year": year_first, "day": day_first, "month": month_first}
-        shown = ", ".join(f"the {name} first in line {line}" for name, line in seen.items() if line)
-        message = f"mixed date orders: {shown}; split the file or mend its dates"
-        raise RecordError(message, path=path, line=max(day_first, month_first, year_first))
-    if year_first:
-        return "year-month-day", "dates begin with the year"
-    if day_first:
-        return "day-month-year", f"dates begin with the day, as line {day_first} shows"
-    if month_first:
-        return "month-day-year", f"dates begin with the month, as line {month_first} shows"
-    return _order_by_steps(lines, rows, delimiter, time_columns, path)
-
-
-def _order_by_steps(
-    lines: list[str], rows: list[int], delimiter: str, time_columns: tuple[int, ...], path: str
-) -> tuple[str, str]:
-    """Settle day or month first by which makes the rows follow one another evenly."""
-    texts = pd.Series([time_text(split(lines[number - 1], delimiter), time_columns) or "" for number in rows])
-    even = {}
-    for order in ("day-month-year", "month-day-year"):
-        times, _ = parse_times(texts, order)
-        steps = np.diff(times.dropna().to_numpy().astype("datetime64[s]").astype(np.int64))
-        even[order] = len(steps) > 0 and bool(np.all(steps == steps[0])) and steps[0] > 0
-    crossed = len({text[:10] for text in texts}) > 1
-    if crossed and sum(even.values()) == 1:
-        order = next(name for name, is_even in even.items() if is_even)
-        return order, f"dates read {order}: only so do the rows follow in even steps"
-    message = (
-        f"the date {texts.iloc[0][:10]!r} can be day or month first and no row settles it; "
-        "declare date_order in a layout"
-    )
-    raise RecordError(message, path=path, line=rows[0])
-
-
-def _unit(name: str, header: list[str], head: list[str]) -> tuple[str | None, str]:
-    found = unit_in(name)
-    if found:
-        return found, f"the column's name {name!r}"
-    for number, line in enumerate(head, 1):
-        text = line.strip("#% ")
-        if re.search(r"unit", text, re.IGNORECASE) or re.search(r"level|height", text, re.IGNORECASE):
-            found = unit_in(text)
-            if found:
-                return found, f"line {number}"
-    return None, ""
-
-
-def _zone(
-    head: list[str], header: list[str], time_columns: tuple[int, ...], cells: list[list[str]]
-) -> tuple[str | None, str]:
-    match = TIME.match(time_text(cells[0], time_columns) or "")
-    if match and match["zone"]:
-        return None, "offset in each time"
-    for column in time_columns:
-        if column <= len(header):
-            found = zone_in(header[column - 1])
-            if found:
-                return found, f"the column's name {header[column - 1]!r}"
-    for number, line in enumerate(head, 1):
-        if re.search(r"time|zone|clock|utc|gmt", line, re.IGNORECASE):
-            found = zone_in(line)
-            if found:
-                return found, f"line {number}"
-    return None, "not stated"
+    return "time: " + ", ".join(parts)

@@ -6,9 +6,13 @@ import re
 from datetime import UTC, timedelta, timezone, tzinfo
 from zoneinfo import ZoneInfo, ZoneInfoNotFoundError
 
+import numpy as np
 import pandas as pd
+from numpy.typing import NDArray
 
 from tidekit.errors import RecordError
+
+Times64 = NDArray[np.datetime64]
 
 _FIXED_H = {
     "UTC": 0.0,
@@ -32,8 +36,9 @@ _FIXED_H = {
     "NZST": 12.0,
 }
 """Abbreviations of standard time that mean one offset; common practice, no source."""
-_SEVERAL = {"CST", "IST", "BST", "SST", "LST", "LT", "LOCAL"}
-"""Abbreviations that mean several zones, or none."""
+_DOUBTFUL = "CST CDT EDT MDT PDT ADT IST BST SST LST LDT LT LOCAL CEST EEST AEDT NZDT"
+SEVERAL = frozenset(_DOUBTFUL.split())
+"""Abbreviations that mean several zones, or a clock that only part of the year shows."""
 _OFFSET = re.compile(r"(?:UTC|GMT)\s*([+-])\s*(\d{1,2})(?::?(\d{2}))?(?!\d)", re.IGNORECASE)
 _BARE_OFFSET = re.compile(r"^([+-])(\d{1,2})(?::?(\d{2}))?$")
 
@@ -62,7 +67,7 @@ def zone_named(text: str) -> tzinfo:
         return _fixed(match)
     if stripped.upper() in _FIXED_H:
         return timezone(timedelta(hours=_FIXED_H[stripped.upper()])) if _FIXED_H[stripped.upper()] else UTC
-    if stripped.upper() not in _SEVERAL:
+    if stripped.upper() not in SEVERAL:
         try:
             return ZoneInfo(stripped)
         except (ZoneInfoNotFoundError, ValueError, OSError):
@@ -104,29 +109,44 @@ def zone_in(text: str) -> str | None:
     return None
 
 
-def to_utc(local: pd.Series, zone: tzinfo) -> tuple[pd.Series, pd.Series]:
+def to_utc(local: Times64, zone: tzinfo) -> tuple[Times64, NDArray[np.bool_]]:
     """Turn local times into UTC.
 
     Parameters
     ----------
-    local : Series of datetime64, in the order of the file
+    local : ndarray of datetime64[us], shape (n,), in the order of the file
         Local clock times; NaT passes through.
     zone : tzinfo
         Zone of the clock.
 
     Returns
     -------
-    utc : Series of datetime64, the same index
-        UTC without a zone; NaT where the clock cannot tell.
-    doubtful : Series of bool
+    utc : ndarray of datetime64[us], shape (n,)
+        UTC; NaT where the clock cannot tell.
+    doubtful : ndarray of bool, shape (n,)
         Hours that the clock shows twice and the sequence of rows does not settle, or never shows.
     """
-    known = local.notna()
+    if isinstance(zone, timezone):
+        return local - np.timedelta64(zone.utcoffset(None), "us"), np.zeros(len(local), dtype=np.bool_)
+    known = np.flatnonzero(~np.isnat(local))
     index = pd.DatetimeIndex(local[known])
-    try:
-        aware = index.tz_localize(zone, ambiguous="infer", nonexistent="NaT")
-    except ValueError:  # the rows do not show both passes of the repeated hour
-        aware = index.tz_localize(zone, ambiguous="NaT", nonexistent="NaT")
-    utc = pd.Series(pd.NaT, index=local.index, dtype="datetime64[us]")
-    utc[known] = aware.tz_convert("UTC").tz_localize(None).as_unit("us")
-    return utc, known & utc.isna()
+    aware = index.tz_localize(zone, ambiguous="NaT", nonexistent="NaT")
+    utc = local.copy()
+    utc[known] = aware.tz_convert("UTC").tz_localize(None).to_numpy().astype("datetime64[us]")
+    open_rows = np.flatnonzero(np.asarray(aware.isna()))
+    for run in np.split(open_rows, np.flatnonzero(np.diff(open_rows) > 1) + 1):
+        if len(run):
+            utc[known[run]] = _both_passes(index[run[0] : run[-1] + 1], zone)
+    doubtful = np.zeros(len(local), dtype=np.bool_)
+    doubtful[known] = np.isnat(utc[known])
+    return utc, doubtful
+
+
+def _both_passes(run: pd.DatetimeIndex, zone: tzinfo) -> Times64:
+    """Rows of a repeated hour: settled where the clock is seen to go back once; NaT elsewhere."""
+    back = np.flatnonzero(np.diff(run.to_numpy()) <= np.timedelta64(0))
+    first_pass = np.arange(len(run)) <= (back[0] if len(back) == 1 else -1)
+    settled = run.tz_localize(zone, ambiguous=first_pass, nonexistent="NaT")
+    if len(back) != 1:
+        settled = run.tz_localize(zone, ambiguous="NaT", nonexistent="NaT")
+    return np.asarray(settled.tz_convert("UTC").tz_localize(None).to_numpy().astype("datetime64[us]"))

@@ -14,7 +14,8 @@ HEAD = '[network]\nname = "n"\n[coast]\nside = "left"\ndepth_m = 60.0\n'
 
 
 def gauge_table(gauge: str, source: str, along: float = 0.0) -> str:
-    return f'[[gauge]]\nid = "{gauge}"\n{source}\nlatitude = {-41.0 + along / 111.0}\nlongitude = 88.0\nalong_coast_km = {along}\n'
+    place = f"latitude = {-41.0 + along / 111.0}\nlongitude = 88.0\nalong_coast_km = {along}"
+    return f'[[gauge]]\nid = "{gauge}"\n{source}\n{place}\n'
 
 
 def run(tmp_path: Path, text: str, *options: str) -> int:

@@ -3,17 +3,24 @@
 from __future__ import annotations
 
 import argparse
+import textwrap
+from collections import Counter
+from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
 
 import numpy as np
+import pandas as pd
 
 from tidekit.cli.output import add_output_options, add_reading_options, print_json, reading_options
 from tidekit.records.layout import write_layout
-from tidekit.records.reading import read_file, read_record
+from tidekit.records.reading import ReadFile, read_file, record_of
 from tidekit.records.record import GaugeRecord
 
-_SHOWN = 5
+_GAPS_SHOWN, _LINES_SHOWN = 5, 5
+_GAP_STEPS = 1.5
+"""A step longer than so many ordinary ones is a gap."""
+_WIDTH, _INDENT = 100, 12
 
 
 def add_parser(commands: Any) -> None:
@@ -22,11 +29,11 @@ def add_parser(commands: Any) -> None:
         "inspect",
         help="what is in an export: layout, rows, span, step, gaps",
         description="Show what is in gauge exports: the layout found and why, every row accounted for, span and gaps.",
-        epilog="example: tidekit inspect sample_series/exports/avel_head.csv",
+        epilog="example: tidekit inspect sample_series/exports/avelhead_2021.csv",
     )
     parser.add_argument("exports", metavar="EXPORT", nargs="+", type=Path, help="one gauge's export files")
     add_reading_options(parser)
-    parser.add_argument("--save-layout", metavar="FILE", type=Path, help="save the layout found, as TOML")
+    parser.add_argument("--save-layout", metavar="FILE", type=Path, help="save the first file's layout, as TOML")
     add_output_options(parser)
     parser.set_defaults(run=run)
 
@@ -34,62 +41,135 @@ def add_parser(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     """Inspect the exports."""
     declared = reading_options(options)
-    first = read_file(options.exports[0], **declared)
-    record = read_record(options.exports, **declared)
+    files = [read_file(path, **declared) for path in options.exports]
+    record = record_of(files, options.exports)
     if options.save_layout:
-        write_layout(first.layout, options.save_layout)
-    document = {"evidence": list(first.evidence), **describe(record)}
+        write_layout(files[0].layout, options.save_layout)
+    document = describe(record, files)
     if options.json:
         print_json(document)
     else:
-        print(_text(document))
+        print(as_text(document))
     return 0
 
 
-def describe(record: GaugeRecord) -> dict[str, Any]:
-    """What a record holds, as plain values."""
+def describe(record: GaugeRecord, files: Sequence[ReadFile]) -> dict[str, Any]:
+    """What a record holds, as plain values.
+
+    Parameters
+    ----------
+    record : GaugeRecord
+        The record.
+    files : sequence of ReadFile
+        What was read from each of its files.
+
+    Returns
+    -------
+    dict
+        Files with their layouts and evidence, the ledger, span, step, gaps and range.
+    """
     ledger, heights = record.ledger, record.heights.dropna()
-    gaps = np.diff(record.times_h)
-    long = np.flatnonzero(gaps > 1.5 * record.step_h)
-    widest = long[np.argsort(-gaps[long], kind="stable")][:_SHOWN]
     times = record.heights.index[record.usable]
     return {
-        "files": [source.path for source in record.sources],
-        "layout": record.layout_name,
+        "files": [
+            {
+                "file": source.path,
+                "sha256": source.sha256,
+                "rows": file.rows.count,
+                "layout": file.layout.describe(),
+                "evidence": list(file.evidence),
+                "unit": file.layout.unit,
+                "time_zone": file.layout.time_zone,
+            }
+            for source, file in zip(record.sources, files, strict=True)
+        ],
         "vertical_reference": record.station.vertical_reference,
         "rows": ledger.rows,
         "kept": ledger.kept,
         "flagged": ledger.flagged,
+        "flags": {str(flag): count for flag, count in sorted(Counter(record.flags.tolist()).items())},
         "rejected": len(ledger.rejected),
         "adds_up": ledger.adds_up,
+        "reasons": ledger.reasons,
         "rejected_rows": [{"file": row.path, "line": row.line, "reason": row.reason} for row in ledger.rejected],
         "first_utc": times[0] if len(times) else None,
         "last_utc": times[-1] if len(times) else None,
         "step_min": 60.0 * record.step_h,
-        "gaps": len(long),
-        "longest_gaps": [{"after_utc": times[place], "hours": float(gaps[place])} for place in widest],
+        **_gaps(record, pd.DatetimeIndex(times)),
         "lowest_m": float(heights.min()) if len(heights) else None,
         "highest_m": float(heights.max()) if len(heights) else None,
     }
 
 
-def _text(found: dict[str, Any]) -> str:
-    lines = [f"Files      {', '.join(found['files'])}", f"Layout     {found['layout']}"]
-    lines += [f"             {sentence}" for sentence in found["evidence"]]
-    lines.append(
-        f"Rows       {found['rows']}: {found['kept']} kept, {found['flagged']} missing, {found['rejected']} rejected"
+def _gaps(record: GaugeRecord, times: pd.DatetimeIndex) -> dict[str, Any]:
+    """Spells without a usable height, the longest first."""
+    steps_h = np.diff(record.times_h)
+    long = np.flatnonzero(steps_h > _GAP_STEPS * record.step_h)
+    order = long[np.argsort(-steps_h[long], kind="stable")]
+    absent = np.round(steps_h[long] / record.step_h).astype(int) - 1 if len(long) else np.zeros(0, dtype=int)
+    return {
+        "gaps": len(long),
+        "absent_samples": int(absent.sum()),
+        "longest_gaps": [
+            {"from_utc": times[n], "to_utc": times[n + 1], "hours": round(float(steps_h[n]), 3)}
+            for n in order[:_GAPS_SHOWN]
+        ],
+    }
+
+
+def as_text(found: dict[str, Any]) -> str:
+    """The same for a terminal."""
+    lines: list[str] = []
+    for file in found["files"]:
+        lines += _entry("File", f"{file['file']} ({file['rows']:,} rows)")
+        lines += _entry("Layout", file["layout"])
+        for sentence in file["evidence"]:
+            lines += _entry("", sentence, bullet="- ")
+    lines += _entry(
+        "Rows",
+        f"{found['rows']:,} = {found['kept']:,} kept + {found['flagged']:,} flagged + {found['rejected']:,} rejected",
     )
-    rejected = found["rejected_rows"]
-    lines += [f"             {row['file']}:{row['line']}: {row['reason']}" for row in rejected[:_SHOWN]]
-    if len(rejected) > _SHOWN:
-        lines.append(f"             ... and {len(rejected) - _SHOWN} more (--json lists all)")
-    if found["first_utc"] is not None:
-        lines.append(f"Span       {found['first_utc']:%Y-%m-%d %H:%M} to {found['last_utc']:%Y-%m-%d %H:%M} UTC")
-        lines.append(f"Step       {found['step_min']:g} min, {found['gaps']} gaps")
-        lines += [
-            f"             {gap['hours']:.1f} h after {gap['after_utc']:%Y-%m-%d %H:%M}"
-            for gap in found["longest_gaps"]
-        ]
-        reference = found["vertical_reference"] or "a reference that the export does not name"
-        lines.append(f"Heights    {found['lowest_m']:.3f} to {found['highest_m']:.3f} m above {reference}")
+    for flag, words in (
+        ("9", "missing value"),
+        ("4", "bad by the export's own mark"),
+        ("3", "in doubt by its own mark"),
+    ):
+        if flag in found["flags"]:
+            lines += _entry("", f"{found['flags'][flag]:,} flagged {flag}: {words}", bullet="- ")
+    for reason, count in found["reasons"].items():
+        places = [row for row in found["rejected_rows"] if row["reason"] == reason]
+        many = len(found["files"]) > 1
+        shown = ", ".join(f"{row['file']}:{row['line']}" if many else str(row["line"]) for row in places[:_LINES_SHOWN])
+        word = "line" if count == 1 else "lines"
+        more = f" and {count - _LINES_SHOWN:,} more" if count > _LINES_SHOWN else ""
+        lines += _entry("", f"{count:,} rejected: {reason} ({word} {shown}{more})", bullet="- ")
+    if found["first_utc"] is None:
+        return "\n".join([*lines, *_entry("Heights", "none")])
+    lines += _entry("Span", f"{found['first_utc']:%Y-%m-%d %H:%M} to {found['last_utc']:%Y-%m-%d %H:%M} UTC")
+    if np.isfinite(found["step_min"]):
+        words = (
+            "no gaps" if not found["gaps"] else f"{found['gaps']:,} gaps, {found['absent_samples']:,} samples absent"
+        )
+        lines += _entry("Step", f"{found['step_min']:g} min; {words}")
+    for gap in found["longest_gaps"]:
+        lines += _entry(
+            "",
+            f"{gap['hours']:g} h from {gap['from_utc']:%Y-%m-%d %H:%M} to {gap['to_utc']:%Y-%m-%d %H:%M}",
+            bullet="- ",
+        )
+    reference = found["vertical_reference"] or "a reference that the export does not name"
+    lines += _entry("Heights", f"{found['lowest_m']:.3f} to {found['highest_m']:.3f} m above {reference}")
     return "\n".join(lines)
+
+
+def _entry(name: str, text: str, *, bullet: str = "") -> list[str]:
+    """A named line of the listing, folded."""
+    indent = " " * (_INDENT + len(bullet))
+    return textwrap.wrap(
+        text,
+        _WIDTH,
+        initial_indent=f"{name:<{_INDENT}}{bullet}",
+        subsequent_indent=indent,
+        break_long_words=False,
+        break_on_hyphens=False,
+    )

@@ -113,13 +113,24 @@ def write_layout(layout: Layout, path: str | Path) -> None:
     write_text(path, "\n".join(lines) + "\n")
 
 
-def read_layout(path: str | Path) -> Layout:
+def read_layout(path: str | Path) -> Layout | dict[str, Any]:
     """Read a saved layout.
+
+    Parameters
+    ----------
+    path : path-like
+        TOML with keys of `Layout`.
+
+    Returns
+    -------
+    Layout or dict
+        The layout; where the file leaves out where things stand (`PLACES`), what it declares, by key: the rest is to
+        be recognised.
 
     Raises
     ------
     RecordError
-        If the file is missing, is not TOML, or has an unknown, missing or impossible key.
+        If the file is missing, is not TOML, or has an unknown or impossible key.
     """
     try:
         table: dict[str, Any] = tomllib.loads(Path(path).read_text(encoding="utf-8"))
@@ -130,19 +141,23 @@ def read_layout(path: str | Path) -> Layout:
         message = f"this layout is not TOML: {error}"
         raise RecordError(message, path=path) from error
     values: dict[str, Any] = {key: _checked(key, value, path) for key, value in table.items()}
-    try:
-        layout = Layout(**values)
-    except TypeError as error:
-        message = f"this layout lacks a key: {str(error).partition(': ')[2] or error}"
-        raise RecordError(message, path=path) from error
+    whole = all(key in values for key in PLACES)
+    if not whole and (given := [key for key in (*PLACES, "time_parts", "edges") if key in values]):
+        message = f"where columns stand is declared whole or not at all: wanted {', '.join(PLACES)}"
+        raise RecordError(message, path=path, key=given[0])
+    layout = Layout(**values) if whole else Layout(**_NOWHERE, **values)
     for key, message in _faults(layout):
         raise RecordError(message, path=path, key=key)
     try:
-        return layout.declared(time_zone=layout.time_zone, unit=layout.unit)
+        layout = layout.declared(time_zone=layout.time_zone, unit=layout.unit)
     except RecordError as error:
         raise RecordError(str(error), path=path) from error
+    return layout if whole else {key: getattr(layout, key) for key in values}
 
 
+PLACES = ("delimiter", "first_row", "time_columns", "height_column")
+"""Keys that say where things stand."""
+_NOWHERE: dict[str, Any] = {"delimiter": "|", "first_row": 1, "time_columns": (1,), "height_column": 2}
 _NUMBERS = ("first_row", "height_column", "quality_column")
 _LISTS = {"time_columns": int, "edges": int, "time_parts": str, "missing": str}
 _LISTS |= {"quality_suspect": str, "quality_bad": str}

@@ -130,29 +130,36 @@ def read_file(
 def _layout(
     export: Export, layout: Layout | str | Path | None, column: str | None, time_zone: str | None, unit: str | None
 ) -> tuple[Layout, tuple[str, ...]]:
-    if layout is not None:
-        chosen = layout if isinstance(layout, Layout) else read_layout(layout)
-        if column is not None:
-            if not column.isdecimal() or column == "0":
-                message = f"column {column!r}: beside a declared layout, a column is given by its number"
-                raise RecordError(message, path=export.path)
-            chosen = replace(chosen, height_column=int(column))
+    """The layout of an export, and its evidence."""
+    known = layout if layout is None or isinstance(layout, Layout) else read_layout(layout)
+    found: Recognised | None = None
+    if isinstance(known, Layout):
+        chosen = known if column is None else replace(known, height_column=_number(column, export))
         evidence: tuple[str, ...] = ("layout declared",)
-        found = None
     else:
-        found = recognise(export, column=column)
+        found = recognise(export, column=column, declared=known)
         chosen, evidence = found.layout, found.evidence
+    stated = {"time zone": chosen.time_zone, "unit": chosen.unit}
     chosen = chosen.declared(time_zone=time_zone, unit=unit)
-    evidence += tuple(f"{what} declared" for what, value in (("time zone", time_zone), ("unit", unit)) if value)
-    if chosen.unit is None:
-        _ask_for_unit(export, found)
-    if chosen.time_zone is None and found is not None and found.zone.fault:
-        raise RecordError(found.zone.fault, path=export.path, line=found.zone.line)
+    evidence += tuple(
+        f"{what} {value} declared" + (f", in place of {stated[what]}" if stated[what] not in (None, value) else "")
+        for what, value in (("time zone", time_zone), ("unit", unit))
+        if value
+    )
+    for value, said, what in (
+        (chosen.unit, found.unit if found else None, "unit of its heights"),
+        (chosen.time_zone, found.zone if found else None, ""),
+    ):
+        if value is None and said is not None and said.fault:
+            raise RecordError(said.fault, path=export.path, line=said.line)
+        if value is None and what:
+            message = f'nothing in this export states the {what}; declare it (unit = "m", or --unit m)'
+            raise RecordError(message, path=export.path)
     return chosen, evidence
 
 
-def _ask_for_unit(export: Export, found: Recognised | None) -> None:
-    if found is not None and found.unit.fault:
-        raise RecordError(found.unit.fault, path=export.path, line=found.unit.line)
-    message = 'nothing in this export states the unit of its heights; declare it (unit = "m", or --unit m)'
+def _number(column: str, export: Export) -> int:
+    if column.isdecimal() and 0 < int(column) < 10_000:
+        return int(column)
+    message = f"column {column!r}: beside a declared layout, a column is given by its number"
     raise RecordError(message, path=export.path)

@@ -8,7 +8,9 @@ from __future__ import annotations
 
 import re
 from collections import Counter
+from collections.abc import Mapping
 from dataclasses import dataclass, replace
+from typing import Any
 
 import numpy as np
 
@@ -60,7 +62,7 @@ class _Table:
     """Names of columns, or empty."""
 
 
-def recognise(export: Export, *, column: str | None = None) -> Recognised:
+def recognise(export: Export, *, column: str | None = None, declared: Mapping[str, Any] | None = None) -> Recognised:
     """Find the layout of an export.
 
     Parameters
@@ -69,6 +71,8 @@ def recognise(export: Export, *, column: str | None = None) -> Recognised:
         The opened file.
     column : str, optional
         Name or number of the height column.
+    declared : mapping, optional
+        Values of the layout that are known, by key.
 
     Returns
     -------
@@ -102,16 +106,19 @@ def recognise(export: Export, *, column: str | None = None) -> Recognised:
         comment=next((mark for mark in _COMMENTS if any(line.lstrip().startswith(mark) for line in above)), "#"),
         vertical_reference=reference_said(above, labels[found.column - 1] if found.column <= len(labels) else ""),
     )
-    settled = _order(export, layout, table, path)
+    declared = declared or {}
+    layout = replace(layout, **declared)
+    order = declared.get("date_order")
+    settled = Settled((order,), "date order declared") if order else _order(export, layout, table, path)
     zone = _zone(above, time_labels, table, layout.date_order)
-    layout = replace(layout, date_order=settled.orders[0], time_zone=zone.value)
+    layout = replace(layout, date_order=settled.orders[0], time_zone=layout.time_zone or zone.value)
     evidence = [
         f"rows from line {first}: {len(table.lines)} of the first {len(head)} lines hold a time and a number",
         _time_evidence(table),
         settled.evidence,
         found.evidence,
-        f"unit {unit.value} from {unit.where}" if unit.value else unit.fault or unit.where,
-        f"time zone {zone.value} from {zone.where}" if zone.value else zone.fault or zone.where,
+        f"unit {unit.value} from {unit.where}" if unit.value else unit.where,
+        f"time zone {zone.value} from {zone.where}" if zone.value else zone.where,
     ]
     if export.packing != "plain" or export.encoding != "utf-8":
         evidence.insert(0, f"{export.packing} file, text in {export.encoding}")
@@ -259,7 +266,7 @@ def _order(export: Export, layout: Layout, table: _Table, path: str) -> Settled:
     text = " ".join(cell[0] for cell in columns)
     message = (
         f"the date in {text!r} can be read {' or '.join(settled.orders)} and no row settles it; "
-        "declare date_order in a layout (--save-layout writes one to start from)"
+        f'declare it: --layout FILE with the line date_order = "{settled.orders[0]}"'
     )
     raise RecordError(message, path=path, line=table.lines[0])
 

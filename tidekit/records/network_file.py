@@ -135,7 +135,7 @@ class _Reader:
     ) -> float | None:
         value = self._typed(where, table, key, float)
         if value is not None and not low <= value <= high:
-            message = f"is {value:g}; wanted {low:g} to {high:g} {unit}"
+            message = f"is {value:g}; wanted {low:g} to {high:g} {unit}".rstrip()
             raise self.fail(where, key, message)
         return cast(float | None, value)
 
@@ -159,7 +159,7 @@ class _Reader:
         side = self._typed("coast", table, "side", str)
         if side not in get_args(Side):
             message = (
-                f'is {side!r}; wanted "left" or "right": where the land lies looking along increasing along_coast_km'
+                f'{_found(side)}; wanted "left" or "right": where the land lies looking along increasing along_coast_km'
             )
             raise self.fail("coast", "side", message)
         depths = [key for key in ("depth_m", "depth_along_coast", "depth_cross_shore") if key in table]
@@ -181,7 +181,7 @@ class _Reader:
         table = self._known(where, entry, _GAUGE_KEYS)
         text = {key: self._typed(where, table, key, str) for key in _GAUGE_KEYS if key not in _NOT_TEXT}
         if text["id"] is None or not re.fullmatch(r"[A-Za-z0-9_.-]+", text["id"]):
-            message = f"id is {text['id']!r}; wanted letters, digits, _ . and - only"
+            message = f"{_found(text['id'])}; wanted letters, digits, _ . and - only"
             raise self.fail(where, "id", message)
         for key, check in (("time_zone", zone_named), ("unit", unit_named)):
             try:
@@ -284,6 +284,10 @@ class _Reader:
 
 
 _NOT_TEXT = ("file", "latitude", "longitude", "along_coast_km", "offshore_km", "open_coast")
+
+
+def _found(value: object) -> str:
+    return "is missing" if value is None else f"is {value!r}"
 
 
 def _same_place(a: Station, b: Station) -> bool:

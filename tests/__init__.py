@@ -1,0 +1,1 @@
+"""Tests; tests/outside compares with published sources."""

@@ -6,7 +6,8 @@ from numpy.testing import assert_allclose
 
 pytest.importorskip("erfa", reason="pyerfa comes with the extra `test`")
 
-from tidekit.astronomy.derive import candidates, derive, slow_function, sun_pair, table_text
+from tidekit.astronomy.arguments import candidates
+from tidekit.astronomy.derive import derive, slow_function, sun_pair, table_text
 from tidekit.astronomy.kepler_sun import harmonic, sun_on_ellipse
 from tidekit.astronomy.potential import potential_lines
 from tidekit.astronomy.sky import Body

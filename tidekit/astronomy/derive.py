@@ -14,8 +14,6 @@ References
 from __future__ import annotations
 
 import argparse
-import bisect
-import itertools
 import math
 import sys
 import time
@@ -27,17 +25,15 @@ import numpy as np
 from numpy.typing import NDArray
 from scipy.special import lpmv
 
+from tidekit.astronomy.arguments import Doodson, candidates, slow_rate
 from tidekit.astronomy.kepler_sun import harmonic, sun_on_ellipse
-from tidekit.astronomy.longitudes import slow_longitudes_rad
+from tidekit.astronomy.line_fit import Samples, fit, sample_times, strengths_at
 from tidekit.astronomy.potential import COLUMNS
 from tidekit.astronomy.sky import EARTH_RADIUS_M, Body, moon_and_sun
 from tidekit.files import write_text
 
-Doodson = tuple[int, int, int, int, int, int]
-
 HALF_SPAN_DAYS = 300 * 365.25
 """Half of 1700 to 2300: long enough, under a Hann window, to part 2N' from p (a beat of 179 years)."""
-STEP_DAYS = 1.5
 KEEP_M = 1e-5
 """Lines below this height are not tabulated. [m]"""
 SEARCH_M = 4e-6
@@ -46,14 +42,8 @@ DRIFT_FROM_M = 3e-4
 """Lines above this height may drift in time. [m]"""
 PEAK_SHARE = 0.15
 """Each round takes the lines above this part of the strongest left."""
-PARTED = 2.5 * 2 * np.pi / (600 * 365.25)
-"""Rates closer than this are one line to the fit: 2.5 cycles in six centuries, past a Hann window's main lobe."""
-CHUNK = 8192
 ALL_PARTS = ((2, 0), (2, 1), (2, 2), (3, 0), (3, 1), (3, 2), (3, 3))
 """Degrees and species of the table."""
-
-_SLOW_RATES = np.diff(slow_longitudes_rad([-0.5, 0.5]), axis=0)[0] / 36525.0
-"""Rates of s, h, p, N' and p_s at J2000. [radians a day]"""
 
 
 @dataclass(frozen=True)
@@ -93,54 +83,6 @@ def slow_function(body: Body, degree: int, species: int) -> NDArray[np.complex12
     return np.asarray((-1) ** species * strength * np.exp(-1j * species * body.right_ascension_rad))
 
 
-def candidates(degree: int, species: int, *, moon: bool) -> list[list[Doodson]]:
-    """Arguments that a body's lines can have by symmetry, simplest first, no two too close to part by the fit.
-
-    In Delaunay's angles ``a l + b l' + c F + d D + e Omega`` the multiple of F has the degree's parity and that of
-    Omega is at most the degree; the Sun's lines have h and p_s only. Each entry lists arguments that differ in
-    p_s alone.
-    """
-    found: list[tuple[int, Doodson]] = []
-    if moon:
-        ranges = (range(-5, 6), range(-3, 4), range(-6, 7), range(-6, 7), range(-degree, degree + 1))
-        for a, b, c, d, e in itertools.product(*ranges):
-            if (c - degree) % 2 == 0:
-                number = (species, species + a + c + d, b - d, -a, c - e, -b)
-                found.append((abs(a) + 3 * abs(b) + abs(c) + abs(d) + abs(e), number))
-    else:
-        for k, b in itertools.product(range(-degree, degree + 1, 2), range(-5, 6)):
-            found.append((abs(k) // 2 + 3 * abs(b), (species, species, k + b, 0, 0, -b)))
-    chosen: dict[Doodson, list[Doodson]] = {}
-    taken: list[float] = []
-    for _, number in sorted(found):
-        rate = slow_rate(number)
-        apart_from_p_s: Doodson = (*number[:5], 0)
-        # Long-period lines are real: of the two signs the one that grows in time is kept.
-        if apart_from_p_s in chosen:
-            chosen[apart_from_p_s].append(number)
-        elif (species > 0 or rate > 0 or not any(number)) and not near(taken, rate):
-            chosen[apart_from_p_s] = [number]
-            bisect.insort(taken, rate)
-    return list(chosen.values())
-
-
-def near(rates: list[float], rate: float) -> bool:
-    """Whether a sorted list has a rate within `PARTED` of this one."""
-    place = bisect.bisect_left(rates, rate - PARTED)
-    return place < len(rates) and rates[place] < rate + PARTED
-
-
-def slow_rate(number: Doodson) -> float:
-    """Speed of an argument less that of ``species (tau + s)``. [radians a day]"""
-    return float(np.dot(_slow_number(number), _SLOW_RATES))
-
-
-def _slow_number(number: Doodson) -> NDArray[np.float64]:
-    slow = np.array(number[1:], dtype=np.float64)
-    slow[0] -= number[0]
-    return slow
-
-
 def real_line(
     alternatives: list[Doodson], residual: NDArray[np.complex128], samples: Samples, turn: complex
 ) -> Doodson:
@@ -167,70 +109,6 @@ def sun_pair(number: Doodson, degree: int) -> dict[Doodson, float]:
     main = max(same, key=lambda other: abs(strength[other]))
     ratios = {other: (strength[other] / strength[main]).real for other in same}
     return {other: ratio for other, ratio in ratios.items() if abs(ratio) > 1e-6}
-
-
-@dataclass(frozen=True, eq=False)
-class Samples:
-    """Times of the fit, symmetric about J2000."""
-
-    centuries: NDArray[np.float64]
-    """Julian centuries TT since J2000.0, shape (n,)."""
-    longitudes: NDArray[np.float64]
-    """s, h, p, N' and p_s, shape (n, 5). [radians]"""
-    window: NDArray[np.float64]
-    """Hann window, of sum one."""
-
-    def waves(self, lines: dict[Doodson, float], rows: slice) -> NDArray[np.complex128]:
-        """Sum of ratio times ``exp(i slow argument)`` over lines that move as one."""
-        total = np.zeros(len(self.centuries[rows]), dtype=np.complex128)
-        for number, ratio in lines.items():
-            total += ratio * np.exp(1j * (self.longitudes[rows] @ _slow_number(number)))
-        return total
-
-
-def sample_times(half_span_days: float) -> Samples:
-    """Give the times, longitudes and window of a fit over twice `half_span_days`."""
-    count = int(half_span_days / STEP_DAYS)
-    centuries = np.arange(-count, count + 1) * STEP_DAYS / 36525.0
-    window = np.hanning(2 * count + 3)[1:-1]
-    return Samples(centuries, slow_longitudes_rad(centuries), np.asarray(window / window.sum(), dtype=np.float64))
-
-
-def strengths_at(residual: NDArray[np.complex128], samples: Samples, rates: NDArray[np.float64]) -> NDArray[np.float64]:
-    """Amplitude of a windowed residual near each rate, from a transform padded four times. [m]"""
-    size = 4 * 2 ** math.ceil(math.log2(len(residual)))
-    spectrum = np.abs(np.fft.fft(residual * samples.window, size))
-    bins = np.rint(rates * STEP_DAYS / (2 * np.pi) * size).astype(np.int64) % size
-    return np.asarray(spectrum[bins])
-
-
-def fit(
-    values: NDArray[np.complex128], samples: Samples, groups: list[dict[Doodson, float]], drifting: list[bool]
-) -> tuple[NDArray[np.complex128], NDArray[np.complex128], NDArray[np.complex128]]:
-    """Windowed least squares of line groups: coefficients, their rates a century, and what remains."""
-    real = not groups or next(iter(groups[0]))[0] == 0
-    drift_of = np.flatnonzero(drifting)
-    width = (len(groups) + len(drift_of)) * (2 if real else 1)
-    normal, right = np.zeros((width, width), dtype=np.complex128), np.zeros(width, dtype=np.complex128)
-
-    def design(rows: slice) -> NDArray[np.complex128]:
-        columns = np.stack([samples.waves(group, rows) for group in groups], axis=1)
-        columns = np.hstack([columns, columns[:, drift_of] * samples.centuries[rows, None]])
-        return np.hstack([columns, columns.conj()]) if real else columns
-
-    chunks = [slice(start, start + CHUNK) for start in range(0, len(values), CHUNK)]
-    for rows in chunks:
-        matrix = design(rows)
-        weighted = matrix.conj().T * samples.window[rows]
-        normal += weighted @ matrix
-        right += weighted @ values[rows]
-    # A constant is its own conjugate: the smallest-norm solution shares it between the two columns.
-    solution = np.linalg.lstsq(normal, right, rcond=1e-12)[0]
-    residual = np.concatenate([values[rows] - design(rows) @ solution for rows in chunks])
-    rates = np.zeros(len(groups), dtype=np.complex128)
-    rates[drift_of] = solution[len(groups) : len(groups) + len(drift_of)]
-    scale = 2.0 if real else 1.0
-    return np.asarray(scale * solution[: len(groups)]), np.asarray(scale * rates), residual
 
 
 def body_lines(body: Body, degree: int, species: int, samples: Samples, *, moon: bool) -> list[Line]:

@@ -8,9 +8,16 @@ from __future__ import annotations
 import warnings
 from dataclasses import dataclass
 
-import erfa
 import numpy as np
 from numpy.typing import NDArray
+
+from tidekit.errors import TidekitError
+
+try:
+    import erfa
+except ModuleNotFoundError as error:
+    _message = "deriving the potential needs pyerfa; install tidekit with its extra: pip install 'tidekit[derive]'"
+    raise TidekitError(_message) from error
 
 EARTH_RADIUS_M = 6378136.6
 MOON_MASS_OVER_EARTH = 0.0123000371

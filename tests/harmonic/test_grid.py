@@ -92,7 +92,7 @@ def test_error_grows_with_block_length(monkeypatch: pytest.MonkeyPatch, oracle: 
     expected = oracle(plan, 34392.0, t_h, y)
     errors = []
     for days in (5.0, 10.0, 60.0):
-        monkeypatch.setattr("tidekit.harmonic.grid.block_h", lambda _: 24.0 * days)
+        monkeypatch.setattr("tidekit.harmonic.grid.block_h", lambda _, length=24.0 * days: length)
         errors.append(np.max(np.abs(fast_fit(plan, t_h, y, 34392.0)[0] - expected)))
     assert errors[0] < errors[1] < errors[2]
     assert errors[1] < 0.2 * MICROMETRE < errors[2]

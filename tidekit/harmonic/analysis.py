@@ -11,11 +11,11 @@ from tidekit.constituents.constants import HarmonicConstants, NodalConvention
 from tidekit.constituents.resolution import Companion
 from tidekit.errors import AnalysisError, UnfitRecordError
 from tidekit.harmonic.basis import Basis, basis_for
-from tidekit.harmonic.noise import noise_variance
+from tidekit.harmonic.noise import ResidualSpectrum
 from tidekit.harmonic.normal import Inverse, Model
 from tidekit.harmonic.plan import Plan
 from tidekit.harmonic.results import HarmonicFit, close_pairs
-from tidekit.harmonic.uncertainty import phasor_errors
+from tidekit.harmonic.uncertainty import add_modulation, parameter_noise, phasor_errors
 from tidekit.records.record import GaugeRecord
 
 Float = NDArray[np.float64]
@@ -110,13 +110,13 @@ def fit(
     inverse = Inverse.of(model.normal_matrix(), names)
     parameters = inverse.solve(model.project(heights))
     residual = heights - model.evaluate(parameters)
-    speeds = np.concatenate([np.zeros(1), plan.fitted_speeds_deg_per_h])
-    variance, freedom = noise_variance(residual, times, step_h, speeds)
-    # Parameters in order: mean and trend, real and imaginary parts, regressors (taken to act at low frequency).
-    scale = np.sqrt(np.concatenate([variance[[0] * plan.flat], *(variance[1:],) * 2, variance[[0] * len(regressors)]]))
+    spectrum = ResidualSpectrum.of(residual, times, step_h)
+    variance, freedom = parameter_noise(plan, spectrum, len(regressors))
+    scale = np.sqrt(variance)
     covariance = inverse.inverse * np.outer(scale, scale)
+    add_modulation(plan, covariance, parameters, float(times[-1] - times[0]))
     white = inverse.inverse * (float(residual @ residual) / (len(times) - len(names)))
-    errors = phasor_errors(plan, parameters, covariance, freedom[1:])
+    errors = phasor_errors(plan, parameters, covariance, freedom)
     constants = HarmonicConstants(
         names=plan.names,
         amplitude_m=np.abs(errors.phasors_m),
@@ -132,7 +132,7 @@ def fit(
     return HarmonicFit(
         plan=plan,
         constants=constants,
-        white_amplitude_sd_m=phasor_errors(plan, parameters, white, freedom[1:]).radial_sd_m,
+        white_amplitude_sd_m=phasor_errors(plan, parameters, white, freedom).radial_sd_m,
         t_h=times,
         residual_m=residual,
         reference_h=reference_h,

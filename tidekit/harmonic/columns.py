@@ -19,9 +19,9 @@ Float = NDArray[np.float64]
 Complex = NDArray[np.complex128]
 
 SHORTEST_BLOCK_H, LONGEST_BLOCK_H = 240.0, 480.0
-"""Blocks of records of half a year and of 20 years. M1 and L2, modulated fastest, stray by 4e-5 of themselves from a chord over
-240 h, and by 1e-6 on its average; M2 by 1e-7. What is left repeats with the block and so averages out of longer
-records. The coefficients' error by block length is in tests/harmonic/test_grid.py."""
+"""Blocks of records of half a year and of 20 years. M1 and L2, modulated fastest, stray by 4e-5 of themselves from a
+chord over 240 h, and by 1e-6 on its average; M2 by 1e-7. What is left repeats with the block and so averages out of
+longer records. The coefficients' error by block length is in tests/harmonic/test_grid.py."""
 HOURS_PER_YEAR = 8765.82
 """A tropical year. [hours]"""
 

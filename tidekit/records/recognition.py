@@ -21,7 +21,7 @@ from tidekit.records.decoding import Export
 from tidekit.records.headers import Said, reference_said, unit_said, zone_said
 from tidekit.records.height_column import header_rows, height_column, is_number, labels_of
 from tidekit.records.layout import BLANKS, DATE_ORDERS, FIXED, DateOrder, Layout
-from tidekit.records.time_columns import TimePlace, candidates, clocks, columns_of, enough, steps_are_sound
+from tidekit.records.time_columns import TimePlace, candidates, clocks, columns_of, enough, holds_dates, steps_are_sound
 from tidekit.records.times import read_times
 from tidekit.records.zones import zone_in
 
@@ -158,7 +158,6 @@ def _table_by(head: list[str], delimiter: str, edges: tuple[int, ...]) -> tuple[
     # Only lines that hold a number beside the time can be rows.
     body = [(n, cells) for n, cells in wide if any(is_number(cell) for cell in cells)]
     texts = [cells for _, cells in body]
-    dates = False
     for place in candidates(texts, names):
         columns = columns_of(texts, place.columns)
         found = np.any([~np.isnat(clocks(columns, place, order)) for order in DATE_ORDERS], axis=0)
@@ -175,7 +174,7 @@ def _table_by(head: list[str], delimiter: str, edges: tuple[int, ...]) -> tuple[
         )
         keep = np.flatnonzero(found)
         return _Table(delimiter, edges, place, tuple(lines[n] for n in keep), [texts[n] for n in keep], names), False
-    return None, dates
+    return None, holds_dates(texts)
 
 
 def _plausible(columns: list[list[str]], place: TimePlace, found: np.ndarray) -> bool:

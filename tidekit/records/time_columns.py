@@ -78,6 +78,12 @@ def candidates(rows: list[list[str]], names: list[str]) -> Iterator[TimePlace]:
     yield from _plain_numbers(rows, width)
 
 
+def holds_dates(rows: list[list[str]]) -> bool:
+    """Whether a column holds dates, with a clock beside them or without."""
+    width = min(max((len(row) for row in rows), default=0), _FIRST_COLUMNS)
+    return any(_holds(rows, TimePlace((n,), ("date",))) for n in range(1, width + 1))
+
+
 def _named_numbers(named: dict[str, int]) -> Iterator[TimePlace]:
     day = [part for part in ("month", "day") if part in named]
     days = ("month", "day") if len(day) == 2 else ("day_of_year",) if "day_of_year" in named else ()

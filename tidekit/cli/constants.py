@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import argparse
 import math
+from dataclasses import asdict
 from typing import Any, get_args
 
 from tidekit.cli.output import add_output_options, add_reading_options, print_json, reading_options, write_table
@@ -50,7 +51,7 @@ def run(options: argparse.Namespace) -> int:
                 "trend_m_per_year": fit.trend_m_per_year if options.trend else None,
                 "trend_sd_m_per_year": fit.trend_sd_m_per_year if math.isfinite(fit.trend_sd_m_per_year) else None,
                 "condition_number": fit.condition_number,
-                "close_pairs": [list(pair) for pair in fit.close_pairs],
+                "close_pairs": [asdict(pair) for pair in fit.close_pairs],
                 "constants": frame,
             }
         )

@@ -10,6 +10,7 @@ from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.harmonic.results import HarmonicFit
 from tidekit.quality.daily import against_neighbours, daily_levels
 from tidekit.quality.findings import Finding
+from tidekit.quality.slips import daily_lateness, find_drift, find_slips
 from tidekit.quality.steps import CRITICAL_T, Step, find_steps
 from tidekit.records.network import AuditSettings
 from tidekit.records.record import GaugeRecord
@@ -23,7 +24,7 @@ _FLAT_HOURS = 6.0
 def record_findings(
     fits: Mapping[str, HarmonicFit], records: Mapping[str, GaugeRecord], settings: AuditSettings
 ) -> tuple[Finding, ...]:
-    """Look for datum steps, stuck sensors and thin coverage.
+    """Look for datum steps, slips and drifts of the clock, stuck sensors and thin coverage.
 
     Parameters
     ----------
@@ -41,6 +42,8 @@ def record_findings(
     for gauge, record in records.items():
         findings += coverage_findings(gauge, record, settings)
         findings += flat_findings(gauge, record)
+    for gauge, fit in fits.items():
+        findings += clock_findings(gauge, fit, settings)
     return (*findings, *step_findings(fits, settings))
 
 
@@ -57,7 +60,7 @@ def step_findings(fits: Mapping[str, HarmonicFit], settings: AuditSettings) -> t
 
 
 def _step_finding(gauge: str, step: Step, settings: AuditSettings, *, alone: bool) -> Finding:
-    date = str(datetime64_from_hours(np.array([24.0 * step.day]))[0])[:10]
+    date = _date(step.day)
     against = "alone, no neighbour to compare with" if alone else "less what the neighbours share"
     sure = abs(step.size_m) >= settings.step_error_m and abs(step.size_m) > CRITICAL_T * step.sd_m
     return Finding(
@@ -71,6 +74,35 @@ def _step_finding(gauge: str, step: Step, settings: AuditSettings, *, alone: boo
             f"{'higher' if step.size_m > 0 else 'lower'} from {date} on: check staff and benchmark readings about then"
         ),
     )
+
+
+def clock_findings(gauge: str, fit: HarmonicFit, settings: AuditSettings) -> list[Finding]:
+    """Jumps and drifts of the clock inside a record; warnings, since a change of the tide itself looks alike."""
+    lateness = daily_lateness(fit)
+    findings = []
+    slips = [slip for slip in find_slips(lateness) if abs(slip.size_min) >= settings.clock_error_min]
+    for slip in slips:
+        evidence = (
+            f"from {_date(slip.day)} on the record's tide comes {abs(slip.size_min):.1f} min "
+            f"{'later' if slip.size_min > 0 else 'earlier'} than before: a slip of the clock, or a change of the tide"
+        )
+        findings.append(_clock(gauge, "clock_offset", slip.size_min, slip.sd_min, evidence))
+    drift = None if slips else find_drift(lateness)
+    if drift is not None and abs(drift.rate_min_per_day) * fit.span_days >= settings.clock_error_min:
+        evidence = (
+            f"the record's tide comes later by {drift.rate_min_per_day * fit.span_days:+.1f} min over its "
+            f"{fit.span_days:.0f} days: a drift of the clock, or a slow change of the tide"
+        )
+        findings.append(_clock(gauge, "clock_drift", drift.rate_min_per_day, drift.sd_min_per_day, evidence))
+    return findings
+
+
+def _clock(gauge: str, kind: str, value: float, sd: float, evidence: str) -> Finding:
+    return Finding(gauge=gauge, kind=kind, value=value, value_sd=sd, severity="warning", evidence=evidence)
+
+
+def _date(day: int) -> str:
+    return str(datetime64_from_hours(np.array([24.0 * day]))[0])[:10]
 
 
 def coverage_findings(gauge: str, record: GaugeRecord, settings: AuditSettings) -> list[Finding]:

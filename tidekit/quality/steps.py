@@ -76,6 +76,13 @@ def find_steps(days: NDArray[np.int64], level_m: Float) -> tuple[Step, ...]:
     return tuple(sorted(steps, key=lambda step: step.day))
 
 
+def red_line(days: NDArray[np.int64], values: Float) -> tuple[float, float]:
+    """Slope of a straight line a day and its standard deviation under first-order autoregressive noise."""
+    design = np.column_stack([np.ones(len(days)), days - days.mean()])
+    coefficients, sd = _red_fit(design, values)
+    return float(coefficients[1]), float(sd[1])
+
+
 def _smooth_columns(day: NDArray[np.int64]) -> Float:
     """Mean, and annual and semi-annual terms where the record is long enough for the harmonic fit to have them."""
     columns = [np.ones(len(day))]

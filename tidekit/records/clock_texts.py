@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Iterator
 from dataclasses import dataclass
+from functools import cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -35,7 +36,6 @@ _DATES: dict[DateOrder, str] = {
     "month-day-year": rf"(?:{_MONTH}{_S}{_DAY}(?P=s){_YEAR}|{_NAMED}[-/. ]?{_DAY}(?:ST|ND|RD|TH)?[-/., ]*{_YEAR})",
     "year-day-of-year": r"(?P<year>0000)[-/. ]?(?P<day_of_year>000)",
 }
-_PART_PATTERNS = {"clock": (_CLOCK, _PACKED_CLOCK)}
 
 
 @dataclass(frozen=True, eq=False)
@@ -49,6 +49,7 @@ class Fields:
     """Which texts could be read."""
 
 
+@cache
 def _patterns(part: str, order: DateOrder) -> list[re.Pattern[str]]:
     dates = _alternatives(_DATES[order])
     if part == "clock":

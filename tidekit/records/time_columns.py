@@ -130,8 +130,12 @@ def _holds(rows: list[list[str]], place: TimePlace) -> bool:
         place = TimePlace(place.columns, ("stamp",))
     else:
         texts = columns_of(rows, place.columns)
-    found = np.any([read(texts, place, order) for order in DATE_ORDERS], axis=0)
-    return enough(found)
+    found = np.zeros(len(rows), dtype=np.bool_)
+    for order in DATE_ORDERS:
+        found |= ~np.isnat(clocks(texts, place, order))
+        if enough(found):
+            return True
+    return False
 
 
 def enough(found: NDArray[np.bool_]) -> bool:
@@ -142,11 +146,6 @@ def enough(found: NDArray[np.bool_]) -> bool:
 def columns_of(rows: list[list[str]], columns: Iterable[int]) -> list[list[str]]:
     """Texts of some columns; empty where a row is short."""
     return [[row[n - 1] if len(row) >= n else "" for row in rows] for n in columns]
-
-
-def read(texts: list[list[str]], place: TimePlace, order: DateOrder) -> NDArray[np.bool_]:
-    """Which rows hold a sound time in an order of dates."""
-    return ~np.isnat(clocks(texts, place, order))
 
 
 def clocks(texts: list[list[str]], place: TimePlace, order: DateOrder) -> NDArray[np.datetime64]:

@@ -60,6 +60,8 @@ def read_times(cells: list[Bytes], parts: tuple[str, ...], order: DateOrder, dec
             numbers = read_numbers(texts, decimal)
             sound &= np.isfinite(numbers)
             values[part] = np.where(np.isfinite(numbers), numbers, 0.0)
+    if not sound.any():
+        return Times(np.full(n, np.datetime64("NaT", "us")), zoned)
     if parts[0] in _EPOCH_SECONDS:
         microseconds = np.round(np.where(sound, values[parts[0]], 0.0) * _EPOCH_SECONDS[parts[0]] * 1e6)
         sound &= np.abs(microseconds) < 7.3e15  # the years 1739 to 2201

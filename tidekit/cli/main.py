@@ -13,6 +13,7 @@ from tidekit.errors import TidekitError
 
 COMMANDS = (
     "inspect",
+    "screen",
     "constants",
     "heights",
     "tidetable",

@@ -29,8 +29,8 @@ def add_parser(commands: Any) -> None:
     parser = commands.add_parser(
         "screen",
         help="quality flags and what raised them",
-        description="Screen a record with the tests of the IOOS water-level manual, thresholds derived from the gauge's "
-        "own tide and noise and shown. Flags: 1 good, 2 not evaluated, 3 suspect, 4 fail, 9 missing.",
+        description="Screen a record with the tests of the IOOS water-level manual, thresholds derived from the "
+        "gauge's own tide and noise and shown. Flags: 1 good, 2 not evaluated, 3 suspect, 4 fail, 9 missing.",
         epilog="example: tidekit screen sample_series/network.toml:dellisk --out flags.csv --picture flags.png. "
         "Exit code 1: samples fail.",
     )

@@ -6,6 +6,7 @@ import numpy as np
 import pandas as pd
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
+from numpy.typing import NDArray
 
 from tidekit.quality.screening import Screening
 from tidekit.records.record import FLAG_FAIL, FLAG_MISSING, FLAG_SUSPECT
@@ -41,7 +42,7 @@ def draw_record(screening: Screening) -> Figure:
     return figure
 
 
-def _draw(screening: Screening, values: np.ndarray, axes: Axes) -> None:  # type: ignore[type-arg]
+def _draw(screening: Screening, values: NDArray[np.float64], axes: Axes) -> None:
     times = pd.DatetimeIndex(screening.record.heights.index).tz_localize(None).to_numpy()
     step = np.timedelta64(round(3600 * screening.record.step_h), "s")
     gaps = np.flatnonzero(np.diff(times) > 1.5 * step)

@@ -78,21 +78,18 @@ def test_a_gap_is_no_spike(heights: np.ndarray) -> None:
 
 def test_a_reviewer_overrules_and_stays_in_the_trail(heights: np.ndarray, tmp_path: Path) -> None:
     heights[500] += 0.6
-    heights[501] = np.nan
+    heights[503] = np.nan
     found = screen(made(heights))
-    when = found.record.heights.index[500]
+    start, end = (found.record.heights.index[n].isoformat() for n in (500, 503))
     path = tmp_path / "review.csv"
-    path.write_text(
-        f"from_utc,to_utc,flag,reason\n{when.isoformat()},{(when + pd.Timedelta(hours=2)).isoformat()},1,ship wash, seen\n"
-    )
+    path.write_text(f"from_utc,to_utc,flag,reason\n{start},{end},1,ship wash, seen\n")
     with pytest.raises(InputError, match=r"review\.csv:2: wanted an end at or after"):
         read_overrides(path)  # a comma in a reason wants quotes
-    path.write_text(f'from_utc,to_utc,flag,reason\n{when.isoformat()},{when.isoformat()},1,"ship wash, seen"\n')
+    path.write_text(f'from_utc,to_utc,flag,reason\n{start},{end},1,"ship wash, seen"\n')
     reviewed = apply_overrides(found, read_overrides(path))
-    assert reviewed.flags[500] == 1
-    assert reviewed.flags[501] == 9
+    assert reviewed.flags[500:504].tolist() == [1, 1, 1, 9]
     assert reviewed.raised_by()[500] == "review"
-    assert reviewed.reviewed == {500: "ship wash, seen"}
+    assert reviewed.reviewed == dict.fromkeys((500, 501, 502), "ship wash, seen")
     assert reviewed.by_test["spike"][500] == 4  # what the test said stays
 
 

@@ -92,18 +92,17 @@ def read_part(cells: Bytes, part: str, order: DateOrder) -> Fields:
     Fields
         Numbers, and which texts could be read.
     """
-    n = len(cells)
-    names = ("year", "month", "day", "day_of_year", "hour", "minute", "microsecond", "offset_min", "zoned")
-    values = {name: np.zeros(n, dtype=np.int64) for name in names}
-    sound = np.zeros(n, dtype=np.bool_)
+    values: dict[str, Ints] = {}
+    sound = np.zeros(len(cells), dtype=np.bool_)
     patterns = _patterns(part, order)
     for shape, rows in shapes_of(cells):
         match = next((found for pattern in patterns if (found := pattern.fullmatch(shape))), None)
         if match is None:
             continue
         sound[rows] = True
-        part_cells = cells if isinstance(rows, slice) else cells[rows]
-        for name, numbers in _numbers(match, part_cells).items():
+        for name, numbers in _numbers(match, cells if isinstance(rows, slice) else cells[rows]).items():
+            if name not in values:
+                values[name] = np.zeros(len(cells), dtype=np.int64)
             values[name][rows] = numbers
     return Fields(values, sound)
 
@@ -177,7 +176,9 @@ def _numbers(match: re.Match[str], cells: Bytes) -> dict[str, Ints | int]:
 
 
 def _integer(cells: Bytes, start: int, end: int) -> Ints:
-    value = np.zeros(len(cells), dtype=np.int64)
+    value = np.zeros(len(cells), dtype=np.int32)  # nine digits at most
     for place in range(start, end):
-        value = value * 10 + (cells[:, place] - 48)
-    return value
+        value *= 10
+        value += cells[:, place]
+        value -= 48
+    return value.astype(np.int64)

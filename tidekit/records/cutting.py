@@ -12,15 +12,17 @@ from dataclasses import dataclass
 from itertools import pairwise
 
 import numpy as np
+from numpy.lib.stride_tricks import sliding_window_view
 from numpy.typing import NDArray
 
 from tidekit.records.decoding import Block
 from tidekit.records.layout import BLANKS, FIXED, Layout
 
 Bytes = NDArray[np.uint8]
+Places = NDArray[np.int64]
 WIDEST_CELL = 48
-"""A longer cell is no time and no number; it is cut there, and so read as neither."""
-_FEED, _RETURN, _SPACE, _TAB, _QUOTE = b'\n\r \t"'
+"""A longer cell is no time and no number."""
+_FEED, _RETURN, _SPACE, _TAB, _QUOTE, _TOO_WIDE = b'\n\r \t"?'
 
 
 @dataclass(frozen=True, eq=False)
@@ -56,70 +58,80 @@ def cut(block: Block, layout: Layout, wanted: Iterable[int]) -> Cells:
     Cells
         Rows from `layout.first_row` on, without blank and comment lines.
     """
-    columns = sorted(set(wanted))
-    data = np.frombuffer(block.data, dtype=np.uint8)
+    data = np.frombuffer(block.data + bytes(WIDEST_CELL), dtype=np.uint8)
     ends = np.flatnonzero(data == _FEED)
-    starts = np.concatenate(([0], ends[:-1] + 1))
-    line = block.first_line + np.arange(len(starts), dtype=np.int64)
-    starts, ends = _trimmed(data, starts, ends, blanks=(_SPACE, _RETURN))
+    whole_starts = np.concatenate(([0], ends[:-1] + 1))
+    line = block.first_line + np.arange(len(ends), dtype=np.int64)
+    starts, ends = _trimmed(data, whole_starts, ends, blanks=(_SPACE, _RETURN))
     rows = (line >= layout.first_row) & (ends > starts)
     if layout.comment:
         rows &= ~_begins_with(data, starts, layout.comment.encode())
-    starts, ends, line = starts[rows], ends[rows], line[rows]
-    if layout.delimiter == FIXED:
-        starts = block_line_starts(data, starts)
-    quoted = _counts(np.flatnonzero(data == _QUOTE), starts, ends) > 0 if _QUOTE in block.data else None
-    spans = {column: _span(data, starts, ends, layout, column) for column in columns}
+    # Columns of fixed width count from the line's first character, a blank or not.
+    starts, ends, line = (whole_starts if layout.delimiter == FIXED else starts)[rows], ends[rows], line[rows]
+    spans = _spans(data, starts, ends, layout, sorted(set(wanted)))
     short = np.zeros(len(starts), dtype=np.bool_)
     texts: dict[int, Bytes] = {}
     for column, (first, last) in spans.items():
         short |= first < 0
         texts[column] = _gather(data, *_trimmed(data, np.maximum(first, 0), last, blanks=(_SPACE, _TAB)))
-    if quoted is not None and quoted.any() and layout.delimiter not in (BLANKS, FIXED):
-        short, texts = _recut_quoted(block.data, starts, ends, np.flatnonzero(quoted), layout, short, texts)
+    if _QUOTE in block.data and layout.delimiter not in (BLANKS, FIXED):
+        low, high = _within(np.flatnonzero(data == _QUOTE), starts, ends)
+        short, texts = _recut_quoted(block.data, starts, ends, np.flatnonzero(high > low), layout, short, texts)
     return Cells(line, texts, short)
 
 
-def block_line_starts(data: Bytes, starts: NDArray[np.int64]) -> NDArray[np.int64]:
-    """Starts of lines before their leading blanks: columns of fixed width count from there."""
-    feeds = np.flatnonzero(data == _FEED)
-    before = np.searchsorted(feeds, starts) - 1
-    return np.where(before >= 0, feeds[before] + 1, 0)
-
-
-def _counts(places: NDArray[np.int64], starts: NDArray[np.int64], ends: NDArray[np.int64]) -> NDArray[np.int64]:
-    """How many places lie in each span."""
-    return np.searchsorted(places, ends) - np.searchsorted(places, starts)
-
-
-def _span(
-    data: Bytes, starts: NDArray[np.int64], ends: NDArray[np.int64], layout: Layout, column: int
-) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
-    """Start and end of a column's cell in each line; -1 and 0 where the line is too short."""
+def _spans(
+    data: Bytes, starts: Places, ends: Places, layout: Layout, columns: list[int]
+) -> dict[int, tuple[Places, Places]]:
+    """Start and end of each column's cell in each line; -1 and 0 where the line is too short."""
     if layout.delimiter == FIXED:
         edges = (*layout.edges, 1 + WIDEST_CELL + layout.edges[-1])
-        first = np.minimum(starts + edges[column - 1] - 1, ends)
-        return first, np.minimum(starts + edges[column] - 1, ends)
+        return {
+            c: (np.minimum(starts + edges[c - 1] - 1, ends), np.minimum(starts + edges[c] - 1, ends)) for c in columns
+        }
     if layout.delimiter == BLANKS:
         blank = (data == _SPACE) | (data == _TAB) | (data == _FEED) | (data == _RETURN)
         change = np.diff(np.concatenate(([True], blank, [True])).astype(np.int8))
         opens, closes = np.flatnonzero(change == -1), np.flatnonzero(change == 1)
-        place = np.searchsorted(opens, starts) + column - 1
-        short = place >= np.searchsorted(opens, ends)
-        place = np.minimum(place, len(opens) - 1)
-        return np.where(short, -1, opens[place]), np.where(short, 0, closes[place])
+        low, high = _within(opens, starts, ends)
+        return {c: _word(opens, closes, low + c - 1, high) for c in columns}
     marks = np.flatnonzero(data == ord(layout.delimiter))
-    low, high = np.searchsorted(marks, starts), np.searchsorted(marks, ends)
+    low, high = _within(marks, starts, ends)
     padded = np.concatenate((marks, [0, 0]))
-    short = low + column - 1 > high
-    first = starts if column == 1 else padded[np.minimum(low + column - 2, len(marks))] + 1
-    last = np.where(low + column - 1 < high, padded[np.minimum(low + column - 1, len(marks))], ends)
-    return np.where(short, -1, first), np.where(short, 0, last)
+    return {c: _cell(padded, starts, ends, low + c - 1, high, first=c == 1) for c in columns}
 
 
-def _trimmed(
-    data: Bytes, starts: NDArray[np.int64], ends: NDArray[np.int64], *, blanks: tuple[int, ...]
-) -> tuple[NDArray[np.int64], NDArray[np.int64]]:
+def _word(opens: Places, closes: Places, place: Places, high: Places) -> tuple[Places, Places]:
+    """The words at a place of the list, if still in their line."""
+    short, place = place >= high, np.minimum(place, len(opens) - 1)
+    return np.where(short, -1, opens[place]), np.where(short, 0, closes[place])
+
+
+def _cell(
+    padded: Places, starts: Places, ends: Places, after: Places, high: Places, *, first: bool
+) -> tuple[Places, Places]:
+    """The cells before the delimiters at a place of the list, or the lines' ends."""
+    last = np.where(after < high, padded[np.minimum(after, len(padded) - 1)], ends)
+    if first:
+        return starts, last
+    short = after > high
+    begin = padded[np.minimum(after, len(padded) - 1) - 1] + 1
+    return np.where(short, -1, begin), np.where(short, 0, last)
+
+
+def _within(places: Places, starts: Places, ends: Places) -> tuple[Places, Places]:
+    """Index of the first place in each span, and of the first behind it."""
+    n = len(starts)
+    each = len(places) // n if n else 0
+    if each and each * n == len(places):
+        table = places.reshape(n, each)
+        if bool((table[:, 0] >= starts).all()) and bool((table[:, -1] < ends).all()):
+            low = np.arange(n) * each
+            return low, low + each
+    return np.searchsorted(places, starts), np.searchsorted(places, ends)
+
+
+def _trimmed(data: Bytes, starts: Places, ends: Places, *, blanks: tuple[int, ...]) -> tuple[Places, Places]:
     """Spans without blanks at their ends."""
     is_blank = np.zeros(256, dtype=np.bool_)
     is_blank[list(blanks)] = True
@@ -134,34 +146,36 @@ def _trimmed(
     return starts, ends
 
 
-def _begins_with(data: Bytes, starts: NDArray[np.int64], mark: bytes) -> NDArray[np.bool_]:
+def _begins_with(data: Bytes, starts: Places, mark: bytes) -> NDArray[np.bool_]:
     found = np.ones(len(starts), dtype=np.bool_)
     for offset, byte in enumerate(mark):
         found &= data[np.minimum(starts + offset, len(data) - 1)] == byte
     return found
 
 
-def _gather(data: Bytes, starts: NDArray[np.int64], ends: NDArray[np.int64]) -> Bytes:
-    lengths = np.clip(ends - starts, 0, WIDEST_CELL)
-    width = max(int(lengths.max(initial=0)), 1)
-    places = np.arange(width)
-    matrix: Bytes = data[np.minimum(starts[:, None] + places, len(data) - 1)]
-    matrix[places >= lengths[:, None]] = 0
+def _gather(data: Bytes, starts: Places, ends: Places) -> Bytes:
+    """Cells as rows of a matrix; one too wide begins with a mark that neither time nor number has."""
+    lengths = np.maximum(ends - starts, 0)
+    width = min(max(int(lengths.max(initial=0)), 1), WIDEST_CELL)
+    matrix: Bytes = sliding_window_view(data, width)[starts]
+    if int(lengths.min(initial=width)) < width:
+        matrix[np.arange(width) >= lengths[:, None]] = 0
+    matrix[lengths > WIDEST_CELL, 0] = _TOO_WIDE
     return matrix
 
 
 def as_matrix(texts: list[bytes]) -> Bytes:
     """Matrix of bytes of some texts, shape (n, width)."""
-    array = np.array([text[:WIDEST_CELL] for text in texts] or [b"\0"], dtype=np.bytes_)
+    array = np.array([text if len(text) <= WIDEST_CELL else b"?" for text in texts] or [b"\0"], dtype=np.bytes_)
     width = max(array.dtype.itemsize, 1)
     return np.frombuffer(array.astype(f"S{width}").tobytes(), dtype=np.uint8).reshape(-1, width)[: len(texts)].copy()
 
 
 def _recut_quoted(
     data: bytes,
-    starts: NDArray[np.int64],
-    ends: NDArray[np.int64],
-    quoted: NDArray[np.int64],
+    starts: Places,
+    ends: Places,
+    quoted: Places,
     layout: Layout,
     short: NDArray[np.bool_],
     texts: dict[int, Bytes],

@@ -21,7 +21,7 @@ LARGEST_BYTES = 8_000_000_000
 """An export that unpacks to more is refused: a century of minutes is a quarter of it."""
 LONGEST_LINE_BYTES = 1_000_000
 """A longer line is no row of a gauge."""
-BLOCK_BYTES = 8_000_000
+BLOCK_BYTES = 4_000_000
 """Bytes held at a time: large enough for numpy, small beside the record."""
 HEAD_BYTES = 256_000
 """Bytes that show the layout."""
@@ -62,8 +62,8 @@ class Export:
                 if total > LARGEST_BYTES:
                     message = f"unpacks to more than {LARGEST_BYTES:,} bytes; split it by years"
                     raise RecordError(message, path=self.path)
-                if self.returns_only:
-                    part = part.replace(b"\r", b"\n")
+                # A zero byte would pass for the end of a cell.
+                part = (part.replace(b"\r", b"\n") if self.returns_only else part).replace(b"\0", b"?")
                 whole, feed, after = part.rpartition(b"\n")
                 if len(rest) + (len(whole.partition(b"\n")[0]) if feed else len(after)) > LONGEST_LINE_BYTES:
                     message = f"a line longer than {LONGEST_LINE_BYTES:,} bytes; wanted one row a line"

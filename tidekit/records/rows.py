@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import Any
 
 import numpy as np
 from numpy.typing import NDArray
@@ -35,7 +36,7 @@ class Rows:
     """Heights; NaN where missing. [m]"""
     flag: NDArray[np.int8]
     """Quality flags."""
-    line: NDArray[np.int64]
+    line: NDArray[np.int32]
     """Line numbers."""
     rejected: tuple[RejectedRow, ...]
     """Rows that could not be read."""
@@ -46,15 +47,8 @@ class Rows:
         return len(self.utc) + len(self.rejected)
 
 
-@dataclass(frozen=True, eq=False)
-class _Part:
-    """Rows of one block, before local times become UTC."""
-
-    clock: NDArray[np.datetime64]
-    zoned: NDArray[np.bool_]
-    height_m: NDArray[np.float64]
-    flag: NDArray[np.int8]
-    line: NDArray[np.int64]
+_Part = tuple[NDArray[np.datetime64], NDArray[np.bool_], NDArray[np.float64], NDArray[np.int8], NDArray[np.int32]]
+"""Clock times, whether they carry an offset, heights, flags and line numbers of a block's good rows."""
 
 
 def read_rows(export: Export, layout: Layout) -> Rows:
@@ -79,24 +73,32 @@ def read_rows(export: Export, layout: Layout) -> Rows:
     """
     path = str(export.path)
     header = _header(export, layout)
-    parts, rejected = [], []
+    rejected: list[RejectedRow] = []
+    columns: list[list[NDArray[Any]]] = [[], [], [], [], []]
     for block in export.blocks():
         part, refused = _read_block(cut(block, layout, _columns(layout)), layout, path, header)
-        parts.append(part)
         rejected += refused
-    if not parts or not (sum(len(part.line) for part in parts) + len(rejected)):
+        for column, values in zip(columns, part, strict=True):
+            column.append(values)
+    if not any(map(len, columns[0])) and not rejected:
         message = f"no rows from line {layout.first_row} on, where the layout says they begin"
         raise RecordError(message, path=path, line=layout.first_row)
-    clock = np.concatenate([part.clock for part in parts])
-    line = np.concatenate([part.line for part in parts])
+    # One column at a time, each letting go of its blocks: a long record never stands in memory twice.
+    clock, zoned, height_m, flag, line = (_concatenated(column) for column in columns)
     return Rows(
         path=path,
-        utc=_utc(Times(clock, np.concatenate([part.zoned for part in parts])), line, layout, path),
-        height_m=np.concatenate([part.height_m for part in parts]),
-        flag=np.concatenate([part.flag for part in parts]),
+        utc=_utc(Times(clock, zoned), line, layout, path),
+        height_m=height_m,
+        flag=flag,
         line=line,
         rejected=tuple(rejected),
     )
+
+
+def _concatenated(blocks: list[NDArray[Any]]) -> NDArray[Any]:
+    whole = np.concatenate(blocks)
+    blocks.clear()
+    return whole
 
 
 def _columns(layout: Layout) -> tuple[int, ...]:
@@ -133,7 +135,8 @@ def _read_block(cells: Cells, layout: Layout, path: str, header: set[bytes]) -> 
         for row in np.flatnonzero(bad)
     ]
     good = ~bad
-    return _Part(times.clock[good], times.zoned[good], height_m[good], flag[good], cells.line[good]), rejected
+    line = cells.line[good].astype(np.int32)  # an export has fewer lines than bytes
+    return (times.clock[good], times.zoned[good], height_m[good], flag[good], line), rejected
 
 
 def _reason(
@@ -190,7 +193,7 @@ def _flag_quality(flag: NDArray[np.int8], cells: Cells, layout: Layout) -> None:
     flag[np.isin(texts, layout.quality_bad) & known] = FLAG_FAIL
 
 
-def _utc(times: Times, line: NDArray[np.int64], layout: Layout, path: str) -> NDArray[np.datetime64]:
+def _utc(times: Times, line: NDArray[np.int32], layout: Layout, path: str) -> NDArray[np.datetime64]:
     """Local times to UTC by the layout's zone, or as each time says."""
     if times.zoned.all():
         return times.clock

@@ -137,12 +137,12 @@ def _trimmed(data: Bytes, starts: Places, ends: Places, *, blanks: tuple[int, ..
     is_blank[list(blanks)] = True
     starts, ends = starts.copy(), ends.copy()
     for move, place in ((1, starts), (-1, ends)):
-        todo = np.flatnonzero(ends > starts)
+        behind = 0 if move == 1 else 1
+        todo = np.flatnonzero(is_blank[data[place - behind]] & (ends > starts))
         while len(todo):
-            at = place[todo] if move == 1 else place[todo] - 1
-            todo = todo[is_blank[data[at]]]
             place[todo] += move
             todo = todo[ends[todo] > starts[todo]]
+            todo = todo[is_blank[data[place[todo] - behind]]]
     return starts, ends
 
 

@@ -47,7 +47,7 @@ class Rows:
         return len(self.utc) + len(self.rejected)
 
 
-_Part = tuple[NDArray[np.datetime64], NDArray[np.bool_], NDArray[np.float64], NDArray[np.int8], NDArray[np.int32]]
+_Part = tuple[NDArray[Any], ...]
 """Clock times, whether they carry an offset, heights, flags and line numbers of a block's good rows."""
 
 

@@ -10,6 +10,7 @@ from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.harmonic.results import HarmonicFit
 from tidekit.quality.daily import against_neighbours, daily_levels
 from tidekit.quality.findings import Finding
+from tidekit.quality.jumps import find_jumps
 from tidekit.quality.slips import daily_lateness, find_drift, find_slips
 from tidekit.quality.steps import CRITICAL_T, Step, find_steps
 from tidekit.records.network import AuditSettings
@@ -53,9 +54,12 @@ def step_findings(fits: Mapping[str, HarmonicFit], settings: AuditSettings) -> t
         return ()
     levels = daily_levels([fit.t_h for fit in fits.values()], [fit.residual_m for fit in fits.values()])
     findings = []
-    for row, gauge in enumerate(fits):
-        for step in find_steps(levels.days, against_neighbours(levels, row)):
-            findings.append(_step_finding(gauge, step, settings, alone=len(fits) == 1))
+    alone = len(fits) == 1
+    for row, (gauge, fit) in enumerate(fits.items()):
+        steps = find_steps(levels.days, against_neighbours(levels, row))
+        if alone and not steps:
+            steps = find_jumps(fit.t_h, fit.residual_m, levels.days, levels.level_m[row])
+        findings += [_step_finding(gauge, step, settings, alone=alone) for step in steps]
     return tuple(findings)
 
 

@@ -83,6 +83,14 @@ def red_line(days: NDArray[np.int64], values: Float) -> tuple[float, float]:
     return float(coefficients[1]), float(sd[1])
 
 
+def red_step(days: NDArray[np.int64], level_m: Float, day: int) -> tuple[float, float]:
+    """Size of a step at a given day and its standard deviation under first-order autoregressive noise. [m]"""
+    known = np.isfinite(level_m)
+    design = np.column_stack([_smooth_columns(days[known]), days[known] >= day])
+    coefficients, sd = _red_fit(design.astype(np.float64), level_m[known])
+    return float(coefficients[-1]), float(sd[-1])
+
+
 def _smooth_columns(day: NDArray[np.int64]) -> Float:
     """Mean, and annual and semi-annual terms where the record is long enough for the harmonic fit to have them."""
     columns = [np.ones(len(day))]

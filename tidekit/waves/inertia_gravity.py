@@ -48,14 +48,44 @@ def critical_width_km(wave: KelvinWave, frequency: float, *, mode: int = 1) -> f
     AnalysisError
         If the mode is below 1.
     """
-    if mode < 1:
-        message = f"mode is {mode}; cross-channel modes count from 1"
-        raise AnalysisError(message)
+    _check_mode(mode)
     return 0.5 * mode * wavelength_km(wave, frequency)
 
 
 def evanescent_scale_km(wave: KelvinWave, frequency: float, width_km: float, *, mode: int = 1) -> float:
-    """Distance over which a mode that cannot travel falls to 1/e along a channel; infinite if it travels. [km]"""
+    """Distance over which a cross-channel mode that cannot travel falls to 1/e along the channel.
+
+    Parameters
+    ----------
+    wave : KelvinWave
+        Depth and latitude of the channel.
+    frequency : float
+        Frequency w. [radians per second]
+    width_km : float
+        Width W of the channel. [km]
+    mode : int
+        Number n of the mode, from 1.
+
+    Returns
+    -------
+    float
+        ``1 / sqrt((n pi / W)^2 - (w^2 - f^2) / c^2)``; infinite if the mode travels. [km]
+
+    Raises
+    ------
+    AnalysisError
+        If the width is not positive or the mode is below 1.
+    """
+    _check_mode(mode)
+    if not width_km > 0:
+        message = f"width is {width_km:g} km; wanted a positive number of kilometres"
+        raise AnalysisError(message)
     across = mode * math.pi / (width_km * 1e3)
     beyond = across**2 - (frequency**2 - wave.coriolis_rad_per_s**2) / wave.speed_m_per_s**2
     return 1e-3 / math.sqrt(beyond) if beyond > 0 else math.inf
+
+
+def _check_mode(mode: int) -> None:
+    if mode < 1:
+        message = f"mode is {mode}; cross-channel modes count from 1"
+        raise AnalysisError(message)

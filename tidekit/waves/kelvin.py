@@ -64,8 +64,12 @@ class KelvinWave:
         return 2 * math.pi * self.speed_m_per_s / angular_speed_rad_per_s(speed_deg_per_h) / 1e3
 
     def amplitude_ratio(self, offshore_km: ArrayLike) -> NDArray[np.float64]:
-        """Amplitude over that at the coast, ``exp(-x |f|/c)``, at distances offshore [km]."""
-        return np.exp(-np.asarray(offshore_km, dtype=np.float64) / self.rossby_radius_km)
+        """Amplitude over that at the coast, ``exp(-x |f|/c)``, at distances offshore [km]; none may be negative."""
+        distance = np.asarray(offshore_km, dtype=np.float64)
+        if np.any(distance < 0):
+            message = f"distance offshore is {float(distance.min()):g} km; wanted 0 or more, seaward of the coast"
+            raise AnalysisError(message)
+        return np.exp(-distance / self.rossby_radius_km)
 
     def current_m_per_s(self, height_m: ArrayLike) -> NDArray[np.float64]:
         """Alongshore current under a surface height, ``sqrt(g/h)`` times it, in the direction of travel at a crest.
@@ -98,7 +102,7 @@ def travel_time_h(along_km: Sequence[float], depth_m: Sequence[float], start_km:
     Raises
     ------
     AnalysisError
-        If positions do not increase or a depth is not positive.
+        If there are not as many depths as positions, positions do not increase, or a depth is not positive.
 
     Notes
     -----
@@ -106,7 +110,11 @@ def travel_time_h(along_km: Sequence[float], depth_m: Sequence[float], start_km:
     ``2 (sqrt(h2) - sqrt(h1)) / (a sqrt(g))``, which equals ``2 dx / (sqrt(g h1) + sqrt(g h2))``.
     """
     positions, depths = np.asarray(along_km, dtype=np.float64), np.asarray(depth_m, dtype=np.float64)
-    if np.any(np.diff(positions) <= 0) or np.any(depths <= 0):
+    if positions.shape != depths.shape or len(positions) < 2:
+        message = f"{len(positions)} positions and {len(depths)} depths along the coast; wanted as many, at least 2"
+        raise AnalysisError(message)
+    # Asked the positive way round, so that a NaN fails too.
+    if not (np.all(np.diff(positions) > 0) and np.all(depths > 0)):
         message = "depths along the coast want increasing positions and positive depths"
         raise AnalysisError(message)
     low, high = sorted((start_km, end_km))

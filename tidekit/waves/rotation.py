@@ -44,3 +44,28 @@ def coriolis_rad_per_s(latitude_deg: float) -> float:
 def angular_speed_rad_per_s(speed_deg_per_h: float) -> float:
     """Angular speed of a constituent. [radians per second]"""
     return math.radians(speed_deg_per_h) / 3600.0
+
+
+def inertial_latitude_deg(frequency: float) -> float:
+    """Latitude, north or south, at which a frequency equals the inertial one.
+
+    Poleward of it no inertia-gravity wave of that frequency travels freely and a channel of any width carries
+    Kelvin waves alone.
+
+    Parameters
+    ----------
+    frequency : float
+        Frequency. [radians per second]
+
+    Returns
+    -------
+    float
+        0 to 90; NaN where the frequency is above the inertial one even at the poles. [degrees]
+
+    Examples
+    --------
+    >>> f"{inertial_latitude_deg(EARTH_ROTATION_RAD_PER_S):.1f}"
+    '30.0'
+    """
+    sine = abs(frequency) / (2.0 * EARTH_ROTATION_RAD_PER_S)
+    return math.degrees(math.asin(sine)) if sine <= 1.0 else math.nan

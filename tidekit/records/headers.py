@@ -5,8 +5,9 @@ from __future__ import annotations
 import re
 from dataclasses import dataclass
 
+from tidekit.errors import RecordError
 from tidekit.records.units import UNIT_OF, unit_in
-from tidekit.records.zones import SEVERAL, zone_in
+from tidekit.records.zones import SEVERAL, zone_in, zone_named
 
 _REFERENCE = re.compile(
     r"(?:datum|vertical.?reference|reference.?level)\s*[\"']?\s*[:,=;\t ]\s*[\"']?([A-Za-z0-9][A-Za-z0-9 .\-]*)",
@@ -104,13 +105,24 @@ def zone_said(head: list[str], labels: list[str]) -> Said:
         if not re.search(r"time|zone|clock|utc|gmt|(?:^|\W)tz(?:$|\W)", line, re.IGNORECASE):
             continue
         found = zone_in(line)
-        if found:
+        if found and not _zone_fault(found):
             return Said(found, f"line {number}")
+        if found:
+            return Said(None, "", _zone_fault(found), number)
         several = next((word for word in re.split(r"[^A-Za-z]+", line) if word.upper() in SEVERAL), None)
         if several and doubt is None:
             message = f"{several!r} is not one time zone; declare it (--time-zone UTC-5, or America/Chicago)"
             doubt = Said(None, "", message, number)
     return doubt or Said(None, "no time zone stated")
+
+
+def _zone_fault(text: str) -> str:
+    """Why a text is no zone; empty if it is one."""
+    try:
+        zone_named(text)
+    except RecordError as error:
+        return str(error)
+    return ""
 
 
 def reference_said(head: list[str], label: str) -> str | None:

@@ -206,7 +206,11 @@ def _utc(times: Times, line: NDArray[np.int32], layout: Layout, path: str) -> ND
             '(time_zone = "UTC-8" or "Pacific/Auckland", or --time-zone)'
         )
         raise RecordError(message, path=path)
-    utc, doubtful = to_utc(times.clock, zone_named(layout.time_zone))
+    try:
+        zone = zone_named(layout.time_zone)
+    except RecordError as error:
+        raise RecordError(str(error), path=path) from error
+    utc, doubtful = to_utc(times.clock, zone)
     if doubtful.any():
         row = int(np.argmax(doubtful))
         shown = str(times.clock[row].astype("datetime64[m]")).replace("T", " ")

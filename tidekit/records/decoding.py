@@ -117,6 +117,8 @@ def open_export(path: str | Path) -> Export:
     lines = text.replace("\r\n", "\n").replace("\r", "\n").split("\n")
     if len(data) == HEAD_BYTES and len(lines) > 1:
         lines.pop()  # cut in the middle
+    elif not lines[-1]:
+        lines.pop()  # behind the last line's end
     return Export(path, _packing(path, start), encoding, returns_only, tuple(lines))
 
 

@@ -30,6 +30,9 @@ _NAMES = {
     "epoch_s": "epoch unix unixtime epochs posix timestamp unixtimestamp epochseconds time",
 }
 _PART_OF = {word: part for part, words in reversed(_NAMES.items()) for word in words.split()}
+_EVEN = 0.9
+"""Share of steps that are the commonest: what is left are gaps."""
+_DAY_US = 86_400_000_000
 _EPOCH_RANGE_S = (1e8, 4.2e9)
 """The years 1973 to 2103."""
 
@@ -42,6 +45,8 @@ class TimePlace:
     """Columns, from 1."""
     parts: tuple[str, ...]
     """What they hold, see `layout.TIME_PARTS`."""
+    named: bool = False
+    """Whether the columns' names say so."""
 
 
 def candidates(rows: list[list[str]], names: list[str]) -> Iterator[TimePlace]:
@@ -92,10 +97,10 @@ def _named_numbers(named: dict[str, int]) -> Iterator[TimePlace]:
         if "hour" not in named:
             clock = ["hhmm"] if "hhmm" in named else []
         parts = ("year", *days, *clock)
-        yield TimePlace(tuple(named[part] for part in parts), parts)
+        yield TimePlace(tuple(named[part] for part in parts), parts, named=True)
     if "epoch_s" in named:
-        yield TimePlace((named["epoch_s"],), ("epoch_s",))
-        yield TimePlace((named["epoch_s"],), ("epoch_ms",))
+        yield TimePlace((named["epoch_s"],), ("epoch_s",), named=True)
+        yield TimePlace((named["epoch_s"],), ("epoch_ms",), named=True)
 
 
 def _plain_numbers(rows: list[list[str]], width: int) -> Iterator[TimePlace]:
@@ -167,3 +172,13 @@ def steps_are_sound(times: NDArray[np.datetime64]) -> bool:
     values, counts = np.unique(steps, return_counts=True)
     common = int(values[np.argmax(counts)])
     return common > 0 and bool(np.all((steps > 0) & (steps <= 100 * common)))
+
+
+def steps_are_even(times: NDArray[np.datetime64]) -> bool:
+    """Whether nearly all rows follow one another in one step, which a day holds a whole number of times."""
+    steps = np.diff(times[~np.isnat(times)]).astype(np.int64)
+    if not len(steps):
+        return False
+    values, counts = np.unique(steps, return_counts=True)
+    common = int(values[np.argmax(counts)])
+    return common > 0 and _DAY_US % common == 0 and int(counts.max()) >= _EVEN * len(steps)

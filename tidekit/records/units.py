@@ -57,6 +57,8 @@ def unit_in(text: str) -> str | None:
     >>> unit_in("SLEV(metres)"), unit_in("height_ft_mllw"), unit_in("Sigma")
     ('m', 'ft', None)
     """
-    words = [word for word in re.split(r"[^A-Za-z]+", text.lower()) if word]
-    found = {UNIT_OF[word] for word in words if word in UNIT_OF and word != "in"}
+    words = [word for word in re.split(r"[^A-Za-z]+", text) if word]
+    # A capital M is a unit only where all is written in capitals: it also names sensors and places.
+    shouted = text == text.upper()
+    found = {UNIT_OF[w.lower()] for w in words if w.lower() in UNIT_OF and w.lower() != "in" and (w != "M" or shouted)}
     return found.pop() if len(found) == 1 else None

@@ -95,6 +95,20 @@ def test_saved_layout_reads_the_same_record(capsys: pytest.CaptureFixture[str]) 
     assert first == second
 
 
+def test_record_written_reads_the_same(capsys: pytest.CaptureFixture[str]) -> None:
+    rows = hours(30)
+    rows[4] = rows[4].split(",")[0] + ","
+    export = write(HEAD + "\n".join(rows))
+    assert entry.main(["inspect", export, "--json", "--out", "record.csv"]) == 0
+    first = json.loads(capsys.readouterr().out)
+    assert entry.main(["inspect", "record.csv", "--json"]) == 0
+    second = json.loads(capsys.readouterr().out)
+    for document in (first, second):
+        del document["files"]
+    assert first == second
+    assert "wanted a name that ends with .csv, .parquet, .nc" in wrong(capsys, export, "--out", "record.doc")
+
+
 def test_two_files_are_joined_and_repeats_name_their_file(capsys: pytest.CaptureFixture[str]) -> None:
     rows = hours(30)
     first, second = write(HEAD + "\n".join(rows[:20])), write(HEAD + "\n".join(rows[18:]), "later.csv")

@@ -105,8 +105,8 @@ def test_time_in_several_columns() -> None:
 
 
 def test_seconds_since_1970() -> None:
-    times = read_times(columns(["0", "1614834000.5", "1e308", "-86400", "x"]), ("epoch_s",), "year-month-day")
+    times = read_times(columns(["0", "1614834000.5", "1e308", "-86400", "x", "9" * 13]), ("epoch_s",), "year-month-day")
     assert times.clock.tolist() == [
-        datetime(1970, 1, 1), datetime(2021, 3, 4, 5, 0, 0, 500000), None, datetime(1969, 12, 31), None,
+        datetime(1970, 1, 1), datetime(2021, 3, 4, 5, 0, 0, 500000), None, datetime(1969, 12, 31), None, None,
     ]  # fmt: skip
-    assert times.zoned.tolist() == [True, True, False, True, False]
+    assert times.zoned.tolist() == [True, True, False, True, False, False]

@@ -16,6 +16,7 @@ from tidekit.cli.output import add_output_options, add_reading_options, print_js
 from tidekit.records.layout import write_layout
 from tidekit.records.reading import ReadFile, read_file, record_of
 from tidekit.records.record import GaugeRecord
+from tidekit.records.writing import write_record
 
 _GAPS_SHOWN, _LINES_SHOWN = 5, 5
 _GAP_STEPS = 1.5
@@ -34,6 +35,7 @@ def add_parser(commands: Any) -> None:
     parser.add_argument("exports", metavar="EXPORT", nargs="+", type=Path, help="one gauge's export files")
     add_reading_options(parser)
     parser.add_argument("--save-layout", metavar="FILE", type=Path, help="save the first file's layout, as TOML")
+    parser.add_argument("--out", metavar="FILE", type=Path, help="write the record to FILE (.csv, .parquet or .nc)")
     add_output_options(parser)
     parser.set_defaults(run=run)
 
@@ -43,6 +45,8 @@ def run(options: argparse.Namespace) -> int:
     declared = reading_options(options)
     files = [read_file(path, **declared) for path in options.exports]
     record = record_of(files, options.exports)
+    if options.out:
+        write_record(record, options.out)
     if options.save_layout:
         write_layout(files[0].layout, options.save_layout)
     document = describe(record, files)

@@ -4,7 +4,6 @@ from __future__ import annotations
 
 import gzip
 import io
-import math
 import zipfile
 import zlib
 from collections.abc import Iterator
@@ -13,9 +12,8 @@ from dataclasses import dataclass
 from pathlib import Path
 from typing import IO, cast
 
-import pandas as pd
-
 from tidekit.errors import RecordError
+from tidekit.records.as_text import EXTRAS, as_text, packing_of
 
 LARGEST_BYTES = 8_000_000_000
 """An export that unpacks to more is refused: a century of minutes is a quarter of it."""
@@ -45,7 +43,7 @@ class Export:
     path: Path
     """The file."""
     packing: str
-    """``plain``, ``gzip``, ``zip`` or ``workbook``."""
+    """``plain``, ``gzip``, ``zip``, ``workbook``, ``parquet`` or ``netcdf``."""
     encoding: str
     """``utf-8``, ``utf-16`` or ``latin-1``."""
     returns_only: bool
@@ -84,7 +82,7 @@ def open_export(path: str | Path) -> Export:
     Parameters
     ----------
     path : path-like
-        A text export: plain, gzip, a zip archive with one file in it, or a workbook.
+        A text export: plain, gzip, or a zip archive with one file in it; a workbook, Parquet or CF NetCDF.
 
     Returns
     -------
@@ -125,9 +123,7 @@ def open_export(path: str | Path) -> Export:
 def _packing(path: Path, start: bytes) -> str:
     if start[:2] == b"\x1f\x8b":
         return "gzip"
-    if start == b"PK\x03\x04":
-        return "workbook" if path.suffix.lower() in (".xlsx", ".xlsm") else "zip"
-    return "plain"
+    return packing_of(start, path.suffix) or ("zip" if start == b"PK\x03\x04" else "plain")
 
 
 def _encoding(data: bytes, path: Path) -> str:
@@ -166,14 +162,14 @@ def _stream(path: Path, encoding: str) -> Iterator[IO[bytes]]:
             stream: IO[bytes] = cast(IO[bytes], gzip.GzipFile(fileobj=raw))
         elif packing == "zip":
             stream = _only_member(raw, path)
-        elif packing == "workbook":
-            stream = _workbook(path)
+        elif packing in EXTRAS:
+            stream = io.BytesIO(as_text(path, packing))
         else:
             stream = raw
         if encoding == "utf-16":
             text = _read(stream, LARGEST_BYTES, path).decode("utf-16", errors="replace")
             stream = io.BytesIO(text.encode("utf-8"))
-        elif encoding == "utf-8" and packing != "workbook":
+        elif encoding == "utf-8" and packing not in EXTRAS:
             stream = _without_mark(stream, path)
         yield stream
 
@@ -198,24 +194,3 @@ def _only_member(raw: IO[bytes], path: Path) -> IO[bytes]:
     except (zipfile.BadZipFile, NotImplementedError, RuntimeError, OSError) as error:
         message = f"this archive cannot be read ({error}); fetch it again or unpack it"
         raise RecordError(message, path=path) from error
-
-
-def _workbook(path: Path) -> IO[bytes]:
-    """First sheet of a workbook as comma-parted text, times in ISO 8601."""
-    try:
-        sheet = pd.read_excel(path, header=None, dtype=object)
-        lines = [",".join(map(_cell_text, row)) for row in sheet.to_numpy(dtype=object)]
-    except ImportError as error:
-        message = "this is a workbook; install tidekit[excel] to read it, or save it as CSV"
-        raise RecordError(message, path=path) from error
-    except Exception as error:  # the reader of workbooks raises whatever its XML parser does
-        message = f"this workbook cannot be read ({type(error).__name__}: {error}); save it as CSV"
-        raise RecordError(message, path=path) from error
-    return io.BytesIO(("\n".join(lines) + "\n").encode("utf-8"))
-
-
-def _cell_text(cell: object) -> str:
-    if cell is None or cell is pd.NaT or (isinstance(cell, float) and math.isnan(cell)):
-        return ""
-    text = str(cell)
-    return '"' + text.replace('"', '""') + '"' if any(mark in text for mark in ',"\n') else text

@@ -67,6 +67,8 @@ class Layout:
     """A line that begins with it is no row; empty for none."""
     edges: tuple[int, ...] = ()
     """First character of each column, where the delimiter is ``fixed``."""
+    flag_column: int | None = None
+    """Column of quality flags by the open standard (1 2 3 4 9)."""
     quality_column: int | None = None
     """Column of the exporter's own mark of quality, if it shall count."""
     quality_suspect: tuple[str, ...] = ()
@@ -158,7 +160,7 @@ def read_layout(path: str | Path) -> Layout | dict[str, Any]:
 PLACES = ("delimiter", "first_row", "time_columns", "height_column")
 """Keys that say where things stand."""
 _NOWHERE: dict[str, Any] = {"delimiter": "|", "first_row": 1, "time_columns": (1,), "height_column": 2}
-_NUMBERS = ("first_row", "height_column", "quality_column")
+_NUMBERS = ("first_row", "height_column", "quality_column", "flag_column")
 _LISTS = {"time_columns": int, "edges": int, "time_parts": str, "missing": str}
 _LISTS |= {"quality_suspect": str, "quality_bad": str}
 
@@ -191,8 +193,8 @@ def _faults(layout: Layout) -> list[tuple[str, str]]:
     whole = len(layout.time_columns) == len(layout.time_parts) > 0
     named = all(part in TIME_PARTS for part in layout.time_parts)
     delimiter = len(layout.delimiter) == 1 and layout.delimiter.isascii() and layout.delimiter not in '\r\n"'
-    columns = min(layout.height_column, layout.quality_column or 1, *layout.time_columns) if whole else 0
-    last = max(layout.height_column, layout.quality_column or 1, *layout.time_columns) if whole else 0
+    others = [layout.height_column, *(n for n in (layout.quality_column, layout.flag_column) if n is not None)]
+    columns, last = (min(*others, *layout.time_columns), max(*others, *layout.time_columns)) if whole else (0, 0)
     checks = (
         ("date_order", layout.date_order in DATE_ORDERS, f"is no date order; wanted one of {', '.join(DATE_ORDERS)}"),
         ("decimal", layout.decimal in (".", ","), 'is no decimal mark; wanted "." or ","'),

@@ -11,6 +11,7 @@ from collections.abc import Mapping
 from dataclasses import dataclass, replace
 from typing import Any
 
+from tidekit.records.as_text import IOC_FLAGS
 from tidekit.records.date_order import Settled, settle
 from tidekit.records.decoding import Export
 from tidekit.records.headers import Said, reference_said, unit_said, zone_said
@@ -80,6 +81,7 @@ def recognise(export: Export, *, column: str | None = None, declared: Mapping[st
         time_parts=table.place.parts,
         height_column=found.column,
         unit=unit.value,
+        flag_column=table.names.index(IOC_FLAGS) + 1 if IOC_FLAGS in table.names else None,
         decimal=decimal,
         comment=next((mark for mark in _COMMENTS if any(line.lstrip().startswith(mark) for line in above)), "#"),
         vertical_reference=reference_said(above, labels[found.column - 1] if found.column <= len(labels) else ""),
@@ -97,6 +99,8 @@ def recognise(export: Export, *, column: str | None = None, declared: Mapping[st
         f"unit {unit.value} from {unit.where}" if unit.value else unit.where,
         f"time zone {zone.value} from {zone.where}" if zone.value else zone.where,
     ]
+    if layout.flag_column is not None:
+        evidence.append(f"quality flags in column {layout.flag_column}, named {IOC_FLAGS!r}")
     if export.packing != "plain" or export.encoding != "utf-8":
         evidence.insert(0, f"{export.packing} file, text in {export.encoding}")
     return Recognised(layout, tuple(filter(None, evidence)), tuple(table.names), unit, zone)

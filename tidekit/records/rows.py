@@ -15,11 +15,12 @@ from tidekit.records.decoding import Export
 from tidekit.records.layout import DATE_ORDERS, Layout
 from tidekit.records.ledger import RejectedRow
 from tidekit.records.numerals import read_numbers
-from tidekit.records.record import FLAG_FAIL, FLAG_MISSING, FLAG_NOT_EVALUATED, FLAG_SUSPECT
+from tidekit.records.record import FLAG_FAIL, FLAG_GOOD, FLAG_MISSING, FLAG_NOT_EVALUATED, FLAG_SUSPECT
 from tidekit.records.times import Times, read_times
 from tidekit.records.units import METRES
 from tidekit.records.zones import to_utc, zone_named
 
+_FLAGS = (FLAG_GOOD, FLAG_NOT_EVALUATED, FLAG_SUSPECT, FLAG_FAIL)
 _FARTHEST_M = 12_000.0
 """A height beyond the deepest water is a fault of the file."""
 
@@ -102,8 +103,8 @@ def _concatenated(blocks: list[NDArray[Any]]) -> NDArray[Any]:
 
 
 def _columns(layout: Layout) -> tuple[int, ...]:
-    quality = () if layout.quality_column is None else (layout.quality_column,)
-    return (*layout.time_columns, layout.height_column, *quality)
+    more = [n for n in (layout.quality_column, layout.flag_column) if n is not None]
+    return (*layout.time_columns, layout.height_column, *more)
 
 
 def _header(export: Export, layout: Layout) -> set[bytes]:
@@ -184,7 +185,11 @@ def _missing(texts: Bytes, value: NDArray[np.float64], layout: Layout) -> NDArra
 
 
 def _flag_quality(flag: NDArray[np.int8], cells: Cells, layout: Layout) -> None:
-    """Turn the exporter's marks into flags."""
+    """Take over flags of the open standard, or turn the exporter's own marks into flags."""
+    if layout.flag_column is not None:
+        given = read_numbers(cells.columns[layout.flag_column])
+        known = np.isin(given, _FLAGS) & (flag != FLAG_MISSING)
+        flag[known] = given[known].astype(np.int8)
     if layout.quality_column is None:
         return
     texts = [bytes(row).rstrip(b"\0").decode("latin-1") for row in cells.columns[layout.quality_column]]

@@ -68,7 +68,8 @@ def read_times(cells: list[Bytes], parts: tuple[str, ...], order: DateOrder, dec
     if not sound.any():
         return Times(np.full(n, np.datetime64("NaT", "us")), np.zeros(n, dtype=np.bool_))
     if parts[0] in _EPOCH_SECONDS:
-        microseconds = np.round(values[parts[0]] * (1e6 * _EPOCH_SECONDS[parts[0]]))
+        far = 2 * _EPOCH_LIMIT_US
+        microseconds = np.clip(np.round(values[parts[0]] * (1e6 * _EPOCH_SECONDS[parts[0]])), -far, far)
         clock, in_range = microseconds.astype(np.int64).view("datetime64[us]"), np.abs(microseconds) < _EPOCH_LIMIT_US
         zoned = np.ones(n, dtype=np.bool_)
     else:

@@ -13,6 +13,8 @@ Float = NDArray[np.float64]
 _LEAST_SHARE = 0.5
 """Part of a day's samples that a daily mean needs."""
 _LEAST_COMMON_DAYS = 30
+_NEIGHBOURS = 4
+"""Neighbours compared with: an even few, so that a gauge amid the coast has as many before it as behind."""
 
 
 @dataclass(frozen=True, eq=False)
@@ -53,22 +55,25 @@ def daily_levels(t_h: Sequence[Float], residual_m: Sequence[Float]) -> DailyLeve
 def against_neighbours(levels: DailyLevels, gauge: int) -> Float:
     """Daily level of a gauge less what its neighbours agree on, shape (d,). [m]
 
-    Each neighbour is scaled by regression to look like the gauge (another exposure, or a unit mistake), and the day's
-    median over neighbours is taken off: one faulty neighbour moves a median little. Without neighbours the level
-    stays as it is.
+    Neighbours are the few gauges whose day-to-day changes are most like this one's, wherever they stand. Each is
+    scaled by regression to look like the gauge (another exposure, or a unit mistake), and the day's median over them
+    is taken off: one faulty neighbour moves a median little. Without neighbours the level stays as it is.
     """
     own = levels.level_m[gauge]
-    scaled = []
+    alike: list[tuple[float, Float]] = []
     for other in np.delete(levels.level_m, gauge, axis=0):
-        both = np.isfinite(own) & np.isfinite(other)
-        if both.sum() >= _LEAST_COMMON_DAYS and np.var(other[both]) > 0:
-            # Differences from day to day see the weather and not a step, which would bias the slope.
-            steps = np.diff(own[both]), np.diff(other[both])
-            scaled.append(other * float(steps[0] @ steps[1] / (steps[1] @ steps[1])))
-    if not scaled:
+        # Differences from day to day see the weather and not a step, which would bias the slope.
+        mine, theirs = np.diff(own), np.diff(other)
+        both = np.isfinite(mine) & np.isfinite(theirs)
+        if both.sum() >= _LEAST_COMMON_DAYS and np.any(theirs[both]) and np.any(mine[both]):
+            product = float(mine[both] @ theirs[both])
+            power = float(theirs[both] @ theirs[both])
+            alike.append((product / np.sqrt(power * float(mine[both] @ mine[both])), other * (product / power)))
+    if not alike:
         return np.asarray(own, dtype=np.float64)
-    stack = np.array(scaled)
-    enough = np.isfinite(stack).sum(axis=0) >= max(1, len(scaled) // 2)
+    alike.sort(key=lambda pair: -pair[0])
+    stack = np.array([scaled for _, scaled in alike[:_NEIGHBOURS]])
+    enough = np.isfinite(stack).sum(axis=0) >= max(1, len(stack) // 2)
     shared = np.full(own.shape, np.nan)
     shared[enough] = np.nanmedian(stack[:, enough], axis=0)
     return np.asarray(own - shared, dtype=np.float64)

@@ -8,9 +8,12 @@ from dataclasses import asdict
 from typing import Any, get_args
 
 from tidekit.cli.output import add_output_options, add_reading_options, print_json, reading_options, write_table
+from tidekit.constituents.catalogue import resolve_names
 from tidekit.constituents.constants import NodalConvention
-from tidekit.constituents.constants_table import constants_frame
+from tidekit.constituents.constants_table import constants_frame, read_constants
+from tidekit.constituents.resolution import Companion, companions_from, resolvable
 from tidekit.harmonic.analysis import analyse_record
+from tidekit.records.record import GaugeRecord
 from tidekit.records.source import open_source
 
 
@@ -29,6 +32,11 @@ def add_parser(commands: Any) -> None:
     parser.add_argument(
         "--nodal", choices=get_args(NodalConvention), default="exact", help="nodal convention (default exact)"
     )
+    parser.add_argument(
+        "--reference",
+        metavar="CONSTANTS",
+        help="infer close companions from these constants of a gauge whose tide is alike, not from the equilibrium tide",
+    )
     add_reading_options(parser)
     add_output_options(parser, table="the constants")
     parser.set_defaults(run=run)
@@ -37,7 +45,8 @@ def add_parser(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     """Analyse the record."""
     record = open_source(options.source, **reading_options(options))
-    fit = analyse_record(record, constituents=options.constituents, trend=options.trend, nodal=options.nodal)
+    fitted, companions = _chosen(record, options)
+    fit = analyse_record(record, constituents=fitted, infer=companions, trend=options.trend, nodal=options.nodal)
     frame = constants_frame(fit.constants, record.station.id)
     if options.out:
         write_table(frame, options.out)
@@ -60,3 +69,16 @@ def run(options: argparse.Namespace) -> int:
         if options.out:
             print(f"Written: {options.out}")
     return 0
+
+
+def _chosen(
+    record: GaugeRecord, options: argparse.Namespace
+) -> tuple[tuple[str, ...] | None, tuple[Companion, ...] | None]:
+    """Constituents to fit and to infer; None leaves the choice to the analyser."""
+    fitted = resolve_names(options.constituents) if options.constituents else None
+    if options.reference is None or len(record.times_h) < 2:
+        return fitted, None
+    reference = read_constants(options.reference)
+    span_h = float(record.times_h[-1] - record.times_h[0]) + record.step_h
+    fitted = fitted or resolvable(span_h, step_h=record.step_h)
+    return fitted, companions_from(reference, fitted, span_h, source=str(options.reference))

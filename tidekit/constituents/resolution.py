@@ -249,3 +249,33 @@ def reference_companions(
         difference = float(pair.phase_lag_deg[0] - pair.phase_lag_deg[1])
         companions.append(Companion(entry.name, main, ratio, difference, source))
     return tuple(companions)
+
+
+def companions_from(
+    reference: HarmonicConstants, fitted: Sequence[str], span_h: float, *, source: str
+) -> tuple[Companion, ...]:
+    """Companions that a record needs, by a reference gauge where it has them and by the equilibrium tide elsewhere.
+
+    Parameters
+    ----------
+    reference : HarmonicConstants
+        Constants of a gauge whose tide is like this one's.
+    fitted : sequence of str
+        Constituents that will be fitted.
+    span_h : float
+        Length of the record. [hours]
+    source : str
+        The reference's name, for the record.
+
+    Returns
+    -------
+    tuple of Companion
+        The same constituents as `equilibrium_companions` gives.
+    """
+    companions = []
+    for companion in equilibrium_companions(fitted, span_h):
+        if {companion.name, companion.from_name} <= set(reference.names):
+            companions += reference_companions([companion.name], [companion.from_name], reference, source=source)
+        else:
+            companions.append(companion)
+    return tuple(companions)

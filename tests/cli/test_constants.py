@@ -67,7 +67,6 @@ def test_a_month_infers_by_the_equilibrium_tide_or_by_a_reference(
         (["none.csv"], "none.csv: cannot read this export"),
         ([SOURCE, "--constituents", "M2", "XX9"], "unknown constituent 'XX9'"),
         ([SOURCE, "--constituents", "M2", "m2"], "M2 named more than once"),
-        ([SOURCE, "--constituents", "MO3", "2MK3"], "apart"),
         ([f"{SAMPLES / 'network.toml'}:nobody"], "no gauge 'nobody'"),
     ],
 )
@@ -76,3 +75,9 @@ def test_wrong_requests_are_one_line(arguments: list[str], message: str, capsys:
     error = capsys.readouterr().err
     assert error.count("\n") == 1
     assert message in error
+
+
+def test_constituents_of_one_speed_are_warned_of(capsys: pytest.CaptureFixture[str]) -> None:
+    """MO3 and 2MK3 share a speed and differ only in nodal modulation, which a year hardly shows."""
+    assert main(["constants", SOURCE, "--constituents", "M2", "K1", "MO3", "2MK3"]) == 0
+    assert "MO3 and 2MK3 are hard to part" in capsys.readouterr().out

@@ -35,7 +35,7 @@ def add_parser(commands: Any) -> None:
     parser.add_argument(
         "--reference",
         metavar="CONSTANTS",
-        help="infer close companions from these constants of a gauge whose tide is alike, not from the equilibrium tide",
+        help="infer close companions from this table of a gauge whose tide is alike, not from the equilibrium tide",
     )
     add_reading_options(parser)
     add_output_options(parser, table="the constants")

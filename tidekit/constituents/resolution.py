@@ -272,7 +272,7 @@ def companions_from(
     tuple of Companion
         The same constituents as `equilibrium_companions` gives.
     """
-    companions = []
+    companions: list[Companion] = []
     for companion in equilibrium_companions(fitted, span_h):
         if {companion.name, companion.from_name} <= set(reference.names):
             companions += reference_companions([companion.name], [companion.from_name], reference, source=source)

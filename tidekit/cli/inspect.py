@@ -21,6 +21,9 @@ from tidekit.records.writing import write_record
 _GAPS_SHOWN, _LINES_SHOWN = 5, 5
 _GAP_STEPS = 1.5
 """A step longer than so many ordinary ones is a gap."""
+_SAME_STEP_H = 1e-4
+_REGULAR = 0.5
+"""Share of steps that must be the commonest for the record to have one."""
 _WIDTH, _INDENT = 100, 12
 
 
@@ -99,10 +102,17 @@ def describe(record: GaugeRecord, files: Sequence[ReadFile]) -> dict[str, Any]:
         "first_utc": times[0] if len(times) else None,
         "last_utc": times[-1] if len(times) else None,
         "step_min": 60.0 * record.step_h,
+        "regular_share": _regular_share(record),
         **_gaps(record, pd.DatetimeIndex(times)),
         "lowest_m": float(heights.min()) if len(heights) else None,
         "highest_m": float(heights.max()) if len(heights) else None,
     }
+
+
+def _regular_share(record: GaugeRecord) -> float:
+    """Share of steps that are the commonest."""
+    steps_h = np.diff(record.times_h)
+    return float(np.mean(np.abs(steps_h - record.step_h) < _SAME_STEP_H)) if len(steps_h) else 1.0
 
 
 def _gaps(record: GaugeRecord, times: pd.DatetimeIndex) -> dict[str, Any]:
@@ -151,10 +161,7 @@ def as_text(found: dict[str, Any]) -> str:
         return "\n".join([*lines, *_entry("Heights", "none")])
     lines += _entry("Span", f"{found['first_utc']:%Y-%m-%d %H:%M} to {found['last_utc']:%Y-%m-%d %H:%M} UTC")
     if np.isfinite(found["step_min"]):
-        words = (
-            "no gaps" if not found["gaps"] else f"{found['gaps']:,} gaps, {found['absent_samples']:,} samples absent"
-        )
-        lines += _entry("Step", f"{found['step_min']:g} min; {words}")
+        lines += _entry("Step", _step_words(found))
     for gap in found["longest_gaps"]:
         lines += _entry(
             "",
@@ -164,6 +171,16 @@ def as_text(found: dict[str, Any]) -> str:
     reference = found["vertical_reference"] or "a reference that the export does not name"
     lines += _entry("Heights", f"{found['lowest_m']:.3f} to {found['highest_m']:.3f} m above {reference}")
     return "\n".join(lines)
+
+
+def _step_words(found: dict[str, Any]) -> str:
+    if found["regular_share"] < _REGULAR:
+        return f"irregular, most often {found['step_min']:g} min"
+    count, absent = found["gaps"], found["absent_samples"]
+    if not count:
+        return f"{found['step_min']:g} min; no gaps"
+    word = "gap" if count == 1 else "gaps"
+    return f"{found['step_min']:g} min; {count:,} {word}, {absent:,} samples absent"
 
 
 def _entry(name: str, text: str, *, bullet: str = "") -> list[str]:

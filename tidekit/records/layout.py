@@ -17,8 +17,6 @@ BLANKS, FIXED = "blanks", "fixed"
 """Delimiters that are no character: runs of blanks, and columns that begin at fixed places."""
 MISSING_MARKS = ("", "-", "--", "---", "*", "NA", "N/A", "NaN", "nan", "null", "NULL", "None", "none", "missing", "M")
 """Texts that exports write where there is no value (common practice, no source)."""
-MISSING_NUMBERS = ("-99", "-99.9", "-99.99", "-99.999", "-999", "-9999", "9999", "99999", "-32768")
-"""Numbers that exports write where there is no value (common practice, no source)."""
 DateOrder = Literal["year-month-day", "day-month-year", "month-day-year", "year-day-of-year"]
 DATE_ORDERS: tuple[DateOrder, ...] = get_args(DateOrder)
 TIME_PARTS = {
@@ -61,8 +59,9 @@ class Layout:
     """Zone of the times; None where each time carries its offset, or none is known yet."""
     decimal: str = "."
     """Decimal mark, ``.`` or ``,``."""
-    missing: tuple[str, ...] = MISSING_MARKS + MISSING_NUMBERS
-    """Texts that stand for no value; numbers among them match by value."""
+    missing: tuple[str, ...] = MISSING_MARKS
+    """Texts that stand for no value; numbers among them match by value. Usual numbers such as -99 count without being
+    named where they lie far from all other heights."""
     comment: str = "#"
     """A line that begins with it is no row; empty for none."""
     edges: tuple[int, ...] = ()

@@ -9,11 +9,12 @@ import numpy as np
 from numpy.typing import NDArray
 
 from tidekit.errors import RecordError
-from tidekit.records.cutting import Bytes, Cells, as_matrix, cut
+from tidekit.records.cutting import Bytes, Cells, cut
 from tidekit.records.date_order import refuse_mixed
 from tidekit.records.decoding import Export
 from tidekit.records.layout import DATE_ORDERS, Layout
 from tidekit.records.ledger import RejectedRow
+from tidekit.records.missing_values import declared_missing, drop_isolated_marks, usual_numbers_m
 from tidekit.records.numerals import read_numbers
 from tidekit.records.record import FLAG_FAIL, FLAG_GOOD, FLAG_MISSING, FLAG_NOT_EVALUATED, FLAG_SUSPECT
 from tidekit.records.times import Times, read_times
@@ -86,6 +87,7 @@ def read_rows(export: Export, layout: Layout) -> Rows:
         raise RecordError(message, path=path, line=layout.first_row)
     # One column at a time, each letting go of its blocks: a long record never stands in memory twice.
     clock, zoned, height_m, flag, line = (_concatenated(column) for column in columns)
+    drop_isolated_marks(height_m, flag, layout)
     return Rows(
         path=path,
         utc=_utc(Times(clock, zoned), line, layout, path),
@@ -124,10 +126,10 @@ def _read_block(cells: Cells, layout: Layout, path: str, header: set[bytes]) -> 
         _refuse_mixed(stamps, times, ~cells.short, cells.line, layout, path)
     texts = cells.columns[layout.height_column]
     value = read_numbers(texts, layout.decimal)
-    missing = _missing(texts, value, layout)
+    missing = declared_missing(texts, value, layout)
     height_m = np.where(missing, np.nan, value * METRES[str(layout.unit)])
     no_height = ~missing & ~np.isfinite(height_m)
-    absurd = ~missing & (np.abs(height_m) > _FARTHEST_M)
+    absurd = (np.abs(height_m) > _FARTHEST_M) & ~np.isin(height_m, usual_numbers_m(layout))
     flag = np.where(missing, FLAG_MISSING, FLAG_NOT_EVALUATED).astype(np.int8)
     _flag_quality(flag, cells, layout)
     bad = no_time | no_height | absurd | cells.short
@@ -170,18 +172,6 @@ def _refuse_mixed(
         if order != layout.date_order
     }
     refuse_mixed(layout.date_order, {layout.date_order: np.zeros(len(odd), dtype=np.bool_), **others}, line[odd], path)
-
-
-def _missing(texts: Bytes, value: NDArray[np.float64], layout: Layout) -> NDArray[np.bool_]:
-    """Which cells stand for no value."""
-    marks = as_matrix([mark.encode("latin-1", "replace") for mark in layout.missing])
-    numbers = read_numbers(marks, ".")
-    missing = np.isin(value, numbers[np.isfinite(numbers)])
-    if "" in layout.missing:
-        missing |= texts[:, 0] == 0
-    for row in np.flatnonzero(~missing & ~np.isfinite(value)):
-        missing[row] = bytes(texts[row]).rstrip(b"\0").decode("latin-1") in layout.missing
-    return missing
 
 
 def _flag_quality(flag: NDArray[np.int8], cells: Cells, layout: Layout) -> None:

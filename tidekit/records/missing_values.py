@@ -64,7 +64,9 @@ def drop_isolated_marks(height_m: NDArray[np.float64], flag: NDArray[np.int8], l
         For its unit.
     """
     usual = usual_numbers_m(layout)
-    marked = np.isin(height_m, usual)
+    marked = np.zeros(len(height_m), dtype=np.bool_)
+    for mark in usual:
+        marked |= height_m == mark
     if not marked.any():
         return
     others = height_m[~marked & np.isfinite(height_m)]

@@ -129,7 +129,8 @@ def _read_block(cells: Cells, layout: Layout, path: str, header: set[bytes]) -> 
     missing = declared_missing(texts, value, layout)
     height_m = np.where(missing, np.nan, value * METRES[str(layout.unit)])
     no_height = ~missing & ~np.isfinite(height_m)
-    absurd = (np.abs(height_m) > _FARTHEST_M) & ~np.isin(height_m, usual_numbers_m(layout))
+    absurd = np.abs(height_m) > _FARTHEST_M
+    absurd[absurd] = ~np.isin(height_m[absurd], usual_numbers_m(layout))
     flag = np.where(missing, FLAG_MISSING, FLAG_NOT_EVALUATED).astype(np.int8)
     _flag_quality(flag, cells, layout)
     bad = no_time | no_height | absurd | cells.short

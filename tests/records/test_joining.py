@@ -11,7 +11,7 @@ from tidekit.errors import RecordError
 from tidekit.files import sha256_of
 from tidekit.records.joining import OTHER_HEIGHT, SAME_ROW
 from tidekit.records.layout import Layout, read_layout, write_layout
-from tidekit.records.reading import read_record
+from tidekit.records.reading import read_file, read_record
 
 
 @pytest.fixture(autouse=True)
@@ -97,3 +97,10 @@ def test_fingerprint_is_that_of_the_file() -> None:
     # FIPS 180-4's one-block example: the message "abc".
     assert sha256_of("empty") == "ba7816bf8f01cfea414140de5dae2223b00361a396177a9cb410ff61f20015ad"
     assert record.sources[0].sha256 == sha256_of(name)
+
+
+def test_progress_is_told_every_byte() -> None:
+    name = write("a.csv", dict.fromkeys(range(24), "1.0"))
+    told: list[int] = []
+    read_file(name, progress=told.append)
+    assert told == [Path(name).stat().st_size]

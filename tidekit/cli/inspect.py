@@ -3,9 +3,10 @@
 from __future__ import annotations
 
 import argparse
+import sys
 import textwrap
 from collections import Counter
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import Any
 
@@ -24,6 +25,7 @@ _GAP_STEPS = 1.5
 _SAME_STEP_H = 1e-4
 _REGULAR = 0.5
 """Share of steps that must be the commonest for the record to have one."""
+_LONG_BYTES = 20_000_000
 _WIDTH, _INDENT = 100, 12
 
 
@@ -46,7 +48,9 @@ def add_parser(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     """Inspect the exports."""
     declared = reading_options(options)
-    files = [read_file(path, **declared) for path in options.exports]
+    files = [read_file(path, progress=_progress(path), **declared) for path in options.exports]
+    if sys.stderr.isatty():
+        print("\r\033[K", end="", file=sys.stderr)  # clear the line of progress
     record = record_of(files, options.exports)
     if options.out:
         write_record(record, options.out)
@@ -58,6 +62,17 @@ def run(options: argparse.Namespace) -> int:
     else:
         print(as_text(document))
     return 0
+
+
+def _progress(path: Path) -> Callable[[int], None] | None:
+    """Megabytes read, on a terminal and for long files only."""
+    if not sys.stderr.isatty() or not path.is_file() or path.stat().st_size < _LONG_BYTES:
+        return None
+
+    def show(done: int) -> None:
+        print(f"\r{path.name}: {done / 1e6:,.0f} MB read", end="\r", file=sys.stderr, flush=True)
+
+    return show
 
 
 def describe(record: GaugeRecord, files: Sequence[ReadFile]) -> dict[str, Any]:

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Callable, Sequence
 from dataclasses import dataclass, replace
 from pathlib import Path
 
@@ -115,8 +115,9 @@ def read_file(
     column: str | None = None,
     time_zone: str | None = None,
     unit: str | None = None,
+    progress: Callable[[int], None] | None = None,
 ) -> ReadFile:
-    """Read one export; see `read_record`."""
+    """Read one export; see `read_record`. `progress` is told the number of bytes read, now and then."""
     export = open_export(path)
     try:
         chosen, evidence = _layout(export, layout, column, time_zone, unit)
@@ -124,7 +125,7 @@ def read_file(
         if error.path is None:
             raise RecordError(str(error), path=path) from error
         raise
-    return ReadFile(rows=read_rows(export, chosen), layout=chosen, evidence=evidence)
+    return ReadFile(rows=read_rows(export, chosen, progress=progress), layout=chosen, evidence=evidence)
 
 
 def _layout(

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Callable
 from dataclasses import dataclass
 from typing import Any
 
@@ -53,7 +54,7 @@ _Part = tuple[NDArray[Any], ...]
 """Clock times, whether they carry an offset, heights, flags and line numbers of a block's good rows."""
 
 
-def read_rows(export: Export, layout: Layout) -> Rows:
+def read_rows(export: Export, layout: Layout, *, progress: Callable[[int], None] | None = None) -> Rows:
     """Read all rows of an export.
 
     Parameters
@@ -62,6 +63,8 @@ def read_rows(export: Export, layout: Layout) -> Rows:
         The opened file.
     layout : Layout
         How it is written; its unit is known.
+    progress : callable, optional
+        Told the number of unpacked bytes behind each block.
 
     Returns
     -------
@@ -77,9 +80,13 @@ def read_rows(export: Export, layout: Layout) -> Rows:
     header = _header(export, layout)
     rejected: list[RejectedRow] = []
     columns: list[list[NDArray[Any]]] = [[], [], [], [], []]
+    done = 0
     for block in export.blocks():
         part, refused = _read_block(cut(block, layout, _columns(layout)), layout, path, header)
         rejected += refused
+        done += len(block.data)
+        if progress is not None:
+            progress(done)
         for column, values in zip(columns, part, strict=True):
             column.append(values)
     if not any(map(len, columns[0])) and not rejected:

@@ -28,6 +28,7 @@ _FIXED_H = {
     "HST": -10.0,
     "WET": 0.0,
     "CET": 1.0,
+    "MEZ": 1.0,
     "EET": 2.0,
     "JST": 9.0,
     "AWST": 8.0,
@@ -36,7 +37,7 @@ _FIXED_H = {
     "NZST": 12.0,
 }
 """Abbreviations of standard time that mean one offset; common practice, no source."""
-_DOUBTFUL = "CST CDT EDT MDT PDT ADT IST BST SST LST LDT LT LOCAL CEST EEST AEDT NZDT"
+_DOUBTFUL = "CST CDT EDT MDT PDT ADT IST BST SST LST LDT LT LOCAL CEST MESZ EEST AEDT NZDT"
 SEVERAL = frozenset(_DOUBTFUL.split())
 """Abbreviations that mean several zones, or a clock that only part of the year shows."""
 _OFFSET = re.compile(r"(?:UTC|GMT)\s*([+-])\s*(\d{1,2})(?::?(\d{2}))?(?!\d)", re.IGNORECASE)

@@ -59,7 +59,7 @@ def measured(path: Path) -> dict[str, float]:
 
 def test_reading_keeps_to_its_bounds(tmp_path: Path) -> None:
     pytest.importorskip("pyarrow")
-    rows = write_minutes(tmp_path / "minutes.csv", 2.0)
+    rows = write_minutes(tmp_path / "minutes.csv", 1.0)
     found = measured(tmp_path / "minutes.csv")
     assert read_record(tmp_path / "minutes.csv").ledger.kept == rows
     assert found["times_bare"] < MOST_TIMES_BARE

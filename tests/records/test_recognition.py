@@ -88,3 +88,11 @@ def test_contradicting_declaration_is_told() -> None:
 )  # fmt: skip
 def test_units_in_labels(label: str, unit: str | None) -> None:
     assert unit_in(label) == unit
+
+
+def test_a_column_named_datum_is_no_vertical_reference() -> None:
+    rows = [f"{time},1.5" for time in hours(30, "%d.%m.%Y,%H:%M", datetime(2021, 3, 12))]
+    file = read_file(write("times: UTC\nDatum,Uhrzeit,Pegel (m)\n", rows))
+    assert file.layout.vertical_reference is None
+    file = read_file(write("times: UTC\nDatum: AHD\nDatum,Uhrzeit,Pegel (m)\n", rows))
+    assert file.layout.vertical_reference == "AHD"

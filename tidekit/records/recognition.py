@@ -69,9 +69,11 @@ def recognise(export: Export, *, column: str | None = None, declared: Mapping[st
     first = table.lines[0]
     above = head[: first - 1]
     labels = labels_of(header_rows(above, table.delimiter, table.edges), table.names)
+    # The line of names speaks of columns, not of the export: Datum may be a date there.
+    said = ["" if table.names and all(name in line for name in table.names) else line for line in above]
     decimal = _decimal(table)
     found = height_column(table.rows, table.names, labels, table.place.columns, column, path)
-    unit = unit_said(labels[found.column - 1] if found.column <= len(labels) else "", above)
+    unit = unit_said(labels[found.column - 1] if found.column <= len(labels) else "", said)
     time_labels = [labels[n - 1] for n in table.place.columns if n <= len(labels)]
     layout = Layout(
         delimiter=table.delimiter,
@@ -84,7 +86,7 @@ def recognise(export: Export, *, column: str | None = None, declared: Mapping[st
         flag_column=table.names.index(IOC_FLAGS) + 1 if IOC_FLAGS in table.names else None,
         decimal=decimal,
         comment=next((mark for mark in _COMMENTS if any(line.lstrip().startswith(mark) for line in above)), "#"),
-        vertical_reference=reference_said(above, labels[found.column - 1] if found.column <= len(labels) else ""),
+        vertical_reference=reference_said(said, labels[found.column - 1] if found.column <= len(labels) else ""),
     )
     layout = replace(layout, **declared)
     order = declared.get("date_order")

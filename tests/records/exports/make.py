@@ -78,6 +78,18 @@ def delimiters() -> None:
         lambda t, h: f"{t:%d.%m.%Y;%H:%M};{h:.3f};60".replace(".", ",").replace(f"{t:%d,%m,%Y}", f"{t:%d.%m.%Y}"),
     )
     case("semicolon_decimal_comma.txt", comma, t, h, offset_h=1)
+    case(
+        "words_of_another_language.csv",
+        table(
+            "Pegel Erfunden\nDatum;Uhrzeit (MEZ);Pegel [cm]\n",
+            lambda t, v: f"{t:%d.%m.%Y;%H:%M};{100 * v:.1f}".replace(".", ",").replace(
+                f"{t:%d,%m,%Y}", f"{t:%d.%m.%Y}"
+            ),
+        ),
+        t,
+        h,
+        offset_h=1,
+    )
     case("tab.tsv", plain("time [UTC]\tlevel [m]\n", mark="\t"), t, h)
     case("pipe.txt", plain("# zone: UTC-3\ntime|stage (m)\n", mark="|"), t, h, offset_h=-3)
     blanks = table("# times in UTC\n# date clock level_m\n", lambda t, h: f"  {t:%Y/%m/%d   %H:%M:%S} {h:9.3f}")

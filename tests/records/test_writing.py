@@ -41,7 +41,7 @@ def test_round_trip_is_exact(tmp_path: Path, suffix: str) -> None:
     written = record()
     write_record(written, path)
     again = read_record(path)
-    assert again.heights.index.equals(written.heights.index)
+    assert list(again.heights.index) == list(written.heights.index)  # instants, whatever unit pandas keeps them in
     assert again.heights.equals(written.heights)
     assert again.flags.equals(written.flags)
     assert again.ledger.adds_up

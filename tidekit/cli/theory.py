@@ -23,12 +23,27 @@ def add_parser(commands: Any) -> None:
         epilog="example: tidekit theory kelvin --depth 60 --latitude -41.2 --constituent M2",
     )
     kinds = parser.add_subparsers(dest="kind", required=True, metavar="WAVE")
-    for name, text, run in (
-        ("kelvin", "a wave held to a straight coast", kelvin),
-        ("inertia-gravity", "free waves that rotation only bends", inertia_gravity),
-        ("channel", "two opposed Kelvin waves: amphidromes, and the width that keeps other waves out", channel),
+    for name, text, example, run in (
+        ("kelvin", "a wave held to a straight coast", "--depth 60 --latitude -41.2 --offshore 118", kelvin),
+        (
+            "inertia-gravity",
+            "free waves that rotation only bends",
+            "--depth 4000 --latitude 20 --constituent K1",
+            inertia_gravity,
+        ),
+        (
+            "channel",
+            "two opposed Kelvin waves: amphidromes, and the width that keeps other waves out",
+            "--depth 50 --latitude 45 --width 200 --reflection 0.8",
+            channel,
+        ),
     ):
-        kind = kinds.add_parser(name, help=text, description=text[0].upper() + text[1:] + ".")
+        kind = kinds.add_parser(
+            name,
+            help=text,
+            description=text[0].upper() + text[1:] + ".",
+            epilog=f"example: tidekit theory {name} {example}",
+        )
         kind.add_argument("--depth", type=float, required=True, metavar="M", help="depth [m]")
         kind.add_argument("--latitude", type=float, required=True, metavar="DEG", help="latitude, north positive [deg]")
         kind.add_argument("--constituent", default="M2", metavar="NAME", help="constituent (default M2)")

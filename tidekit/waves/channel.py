@@ -47,7 +47,7 @@ def amphidrome_offset_km(wave: KelvinWave, reflection: float) -> float:
     if not 0.0 < reflection <= 1.0:
         message = f"reflection is {reflection:g}; wanted above 0 and at most 1"
         raise AnalysisError(message)
-    return -0.5 * wave.rossby_radius_km * math.log(reflection)
+    return 0.5 * wave.rossby_radius_km * math.log(1.0 / reflection)  # 0, not -0, for equal waves
 
 
 def opposed_waves_m(

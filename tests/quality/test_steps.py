@@ -92,3 +92,13 @@ def test_daily_means() -> None:
     daily = daily_levels([t_h[keep]], [values[keep]])
     assert daily.days.tolist() == DAYS[:3].tolist()
     assert_allclose(daily.level_m[0], [1.0, np.nan, 3.0])
+
+
+def test_months_that_wander_weigh_against_a_step() -> None:
+    """Twelve months of independent levels scatter a step of two halves by their sd times sqrt(1/6 + 1/6)."""
+    random = np.random.default_rng(9)
+    months = random.normal(0.0, 0.02, 13)
+    level = months[np.arange(365) // 30] + red(random, 365, 0.3, 0.005) + 0.3 * (np.arange(365) >= 180)
+    (step, *_) = [s for s in find_steps(DAYS, level) if abs(s.day - DAYS[180]) < 3]
+    # What is left has lost the annual terms and the step: four of thirteen degrees of freedom.
+    assert_allclose(step.slow_sd_m, 0.02 * np.sqrt(1 / 6 + 1 / 6), rtol=0.5)

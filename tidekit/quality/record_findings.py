@@ -18,6 +18,8 @@ from tidekit.records.record import GaugeRecord
 
 _LEAST_COVERAGE = 0.8
 """Part of the span that a record should cover (common practice, no source)."""
+_SLOW_DEVIATIONS = 8.0
+"""Deviations of the monthly wandering from which a step is an error rather than a warning."""
 _FLAT_HOURS = 6.0
 """A sea level that stays the same to the last digit for so long is a stuck sensor (common practice, no source)."""
 
@@ -66,7 +68,9 @@ def step_findings(fits: Mapping[str, HarmonicFit], settings: AuditSettings) -> t
 def _step_finding(gauge: str, step: Step, settings: AuditSettings, *, alone: bool) -> Finding:
     date = _date(step.day)
     against = "alone, no neighbour to compare with" if alone else "less what the neighbours share"
-    sure = abs(step.size_m) >= settings.step_error_m and abs(step.size_m) > CRITICAL_T * step.sd_m
+    # Seasons, rivers and currents move neighbours apart for months: a step must stand out of that too.
+    spread = max(CRITICAL_T * step.sd_m, _SLOW_DEVIATIONS * step.slow_sd_m, settings.step_error_m)
+    sure = abs(step.size_m) > spread
     return Finding(
         gauge=gauge,
         kind="datum_step",

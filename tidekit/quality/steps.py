@@ -24,6 +24,7 @@ EDGE_DAYS = 10
 """Steps nearer to an end of the record are not told from weather."""
 MOST_STEPS = 5
 _YEAR_DAYS = 365.2422
+_MONTH_DAYS = 30
 
 
 @dataclass(frozen=True)
@@ -36,6 +37,8 @@ class Step:
     """Level after less level before. [m]"""
     sd_m: float
     """Its standard deviation under red noise. [m]"""
+    slow_sd_m: float = 0.0
+    """What the wandering of monthly levels, which is redder still, adds up to in such a step. [m]"""
 
 
 def find_steps(days: NDArray[np.int64], level_m: Float) -> tuple[Step, ...]:
@@ -69,11 +72,25 @@ def find_steps(days: NDArray[np.int64], level_m: Float) -> tuple[Step, ...]:
         return ()
     design = np.column_stack([base, *(_after(len(day), place) for place in found)])
     coefficients, sd = _red_fit(design, level)
+    left = level - design @ coefficients
     steps = [
-        Step(int(day[place]), float(coefficients[base.shape[1] + n]), float(sd[base.shape[1] + n]))
+        Step(
+            int(day[place]),
+            float(coefficients[base.shape[1] + n]),
+            float(sd[base.shape[1] + n]),
+            _slow_sd(day, left, place),
+        )
         for n, place in enumerate(found)
     ]
     return tuple(sorted(steps, key=lambda step: step.day))
+
+
+def _slow_sd(day: NDArray[np.int64], left: Float, place: int) -> float:
+    """Standard deviation of a step between two means of months, from the scatter of monthly means of what is left."""
+    month = (day - day[0]) // _MONTH_DAYS
+    means = np.bincount(month, weights=left)[np.unique(month)] / np.unique(month, return_counts=True)[1]
+    before, after = max(place / _MONTH_DAYS, 1.0), max((len(day) - place) / _MONTH_DAYS, 1.0)
+    return float(means.std(ddof=1) * np.sqrt(1.0 / before + 1.0 / after))
 
 
 def red_line(days: NDArray[np.int64], values: Float) -> tuple[float, float]:

@@ -78,14 +78,14 @@ def find_steps(days: NDArray[np.int64], level_m: Float) -> tuple[Step, ...]:
             int(day[place]),
             float(coefficients[base.shape[1] + n]),
             float(sd[base.shape[1] + n]),
-            _slow_sd(day, left, place),
+            slow_sd_m(day, left, place),
         )
         for n, place in enumerate(found)
     ]
     return tuple(sorted(steps, key=lambda step: step.day))
 
 
-def _slow_sd(day: NDArray[np.int64], left: Float, place: int) -> float:
+def slow_sd_m(day: NDArray[np.int64], left: Float, place: int) -> float:
     """Standard deviation of a step between two means of months, from the scatter of monthly means of what is left."""
     month = (day - day[0]) // _MONTH_DAYS
     means = np.bincount(month, weights=left)[np.unique(month)] / np.unique(month, return_counts=True)[1]

@@ -44,15 +44,16 @@ def coast_theory(coast: CoastSpec, stations: list[Station]) -> CoastTheory | Non
     Returns
     -------
     CoastTheory or None
-        None where the coast gives no depth or the gauges no latitude: there is nothing to compare with.
+        None where the coast gives no depth or the gauges no latitude, or where they stand on both sides of the
+        equator, which no boundary wave of one hemisphere passes: there is nothing to compare with.
 
     Raises
     ------
     AnalysisError
-        If a depth is not positive or the gauges straddle the equator's trapping latitude.
+        If a depth is not positive.
     """
     latitudes = [station.latitude_deg for station in stations if station.latitude_deg is not None]
-    if not latitudes:
+    if not latitudes or min(latitudes) <= 0.0 <= max(latitudes):
         return None
     latitude = float(np.mean(latitudes))
     depth = _effective_depth(coast, stations, latitude)

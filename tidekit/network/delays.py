@@ -17,6 +17,12 @@ SEARCH_H = 40.0
 """Delays sought on either side: a day of travel and the widest error of time zone. [h]"""
 MODEL_SD_DEG = 2.0
 """Phase scatter that real coasts add to each constituent, beyond its measurement (common practice, no source)."""
+CLEAR_LEAD = 7.0
+"""Lead in log likelihood from which one explanation counts as the only one: odds of a thousand to one."""
+_TRIAL_DEG = 2.0
+"""Step of the search, in phase of the fastest constituent: half of it costs little of the likelihood."""
+_USUAL_H = 6.0
+"""Of delays that explain phases alike, the smaller is likelier by 1 / (1 + (delay / this)^2)."""
 
 
 @dataclass(frozen=True)
@@ -27,14 +33,20 @@ class Delay:
     """Delay. [h]"""
     delay_sd_h: float
     """Its standard deviation from the phases' own. [h]"""
-    fit: float
-    """Weighted mean cosine of what remains: 1 is perfect."""
-    runner_up: float
-    """The same at the best other delay, half a period of the fastest constituent or more away."""
+    log_likelihood: float
+    """Logarithm of how well it explains them: 0 is perfect."""
+    lead: float
+    """What the best other delay, half a period of the fastest constituent or more away, has less of it."""
 
 
 def joint_delay(
-    difference_deg: Float, sd_deg: Float, speeds_deg_per_h: Float, *, search_h: float = SEARCH_H, turn_deg: float = 0.0
+    difference_deg: Float,
+    sd_deg: Float,
+    speeds_deg_per_h: Float,
+    *,
+    search_h: float = SEARCH_H,
+    usual_h: float = _USUAL_H,
+    turn_deg: float = 0.0,
 ) -> Delay:
     """Find the delay common to the constituents' phase differences.
 
@@ -46,6 +58,8 @@ def joint_delay(
         Speeds. [degrees per hour]
     search_h : float
         Search from minus to plus this. [h]
+    usual_h : float
+        Size of usual delays: a much larger one is taken only where it explains the phases better. [h]
     turn_deg : float
         Turn taken off every difference first: 180 asks about a record turned upside down. [degrees]
 
@@ -53,26 +67,35 @@ def joint_delay(
     -------
     Delay
         The best, refined by least squares on the unwrapped remainder.
+
+    Notes
+    -----
+    The log likelihood of a remainder r is ``(cos r - 1) / sd^2`` (von Mises), a normal one's where r is small.
     """
+    turned = difference_deg - turn_deg
     weights = 1.0 / (sd_deg**2 + MODEL_SD_DEG**2)
-    step = 5.0 / float(speeds_deg_per_h.max())
-    trial = np.arange(-search_h, search_h + step, step)
-    remainder = np.deg2rad(difference_deg - turn_deg - np.outer(trial, speeds_deg_per_h))
-    score = np.cos(remainder) @ weights / weights.sum()
-    delay = float(trial[np.argmax(score)])
-    for _ in range(3):  # Gauss-Newton on a remainder that is small after the search
-        left = wrapped_deg(difference_deg - turn_deg - speeds_deg_per_h * delay)
-        delay += float(np.sum(weights * speeds_deg_per_h * left) / np.sum(weights * speeds_deg_per_h**2))
-    left = wrapped_deg(difference_deg - turn_deg - speeds_deg_per_h * delay)
-    apart = np.abs(trial - delay) > 180.0 / float(speeds_deg_per_h.max())
-    own = 1.0 / np.maximum(sd_deg, 1e-6) ** 2
+    fastest = float(speeds_deg_per_h.max())
+    steps = int(np.ceil(search_h * fastest / _TRIAL_DEG))  # zero is among the trials
+    trial = np.arange(-steps, steps + 1) * (_TRIAL_DEG / fastest)
+    likely = _log_likelihood(turned, weights, np.multiply.outer(trial, speeds_deg_per_h))
+    delay = float(trial[np.argmax(likely - np.log1p((trial / usual_h) ** 2))])
     slopes = weights * speeds_deg_per_h / np.sum(weights * speeds_deg_per_h**2)
+    for _ in range(3):  # Gauss-Newton on a remainder that is small after the search
+        delay += float(slopes @ wrapped_deg(turned - speeds_deg_per_h * delay))
+    reached = float(_log_likelihood(turned, weights, speeds_deg_per_h * delay))
+    elsewhere = likely[np.abs(trial - delay) > 180.0 / fastest]
     return Delay(
         delay_h=delay,
-        delay_sd_h=float(np.sqrt(np.sum(slopes**2 / own))),
-        fit=float(np.cos(np.deg2rad(left)) @ weights / weights.sum()),
-        runner_up=float(score[apart].max(initial=-1.0)),
+        delay_sd_h=float(np.sqrt(np.sum((slopes * sd_deg) ** 2))),
+        log_likelihood=reached,
+        lead=reached - float(elsewhere.max(initial=-np.inf)),
     )
+
+
+def _log_likelihood(turned_deg: Float, weights: Float, expected_deg: Float) -> Float:
+    """Of expected phases, shape (..., k), in the last axis: shape (...)."""
+    left = np.deg2rad(turned_deg - expected_deg)
+    return np.asarray((np.cos(left) - 1.0) @ (weights * np.rad2deg(1.0) ** 2))
 
 
 def wrapped_deg(angle_deg: Float) -> Float:

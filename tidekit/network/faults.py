@@ -1,22 +1,13 @@
-"""Faults of single gauges, from the pattern they leave across constituents.
-
-A wrong clock shifts every phase lag in proportion to the constituent's speed; a wrong unit or gain multiplies
-every amplitude alike; a record upside down turns every phase by 180 degrees. Each gauge is judged against the wave
-fitted to the other gauges, and its errors contain the scatter between those.
-"""
+"""Faults of single gauges, read from how they depart from the wave at the others."""
 
 from __future__ import annotations
-
-from dataclasses import dataclass
 
 import numpy as np
 import scipy.stats
 from numpy.typing import NDArray
 
-from tidekit.network.delays import Delay, joint_delay, wrapped_deg
-from tidekit.network.gauges import TideArrays
-from tidekit.network.propagation import PropagationFit, fit_delays, fit_levels, level_design
-from tidekit.network.robust_line import RobustFit
+from tidekit.network.delays import CLEAR_LEAD, wrapped_deg
+from tidekit.network.fingerprints import Fingerprint
 from tidekit.quality.findings import Finding, Severity
 from tidekit.records.network import AuditSettings
 
@@ -24,11 +15,12 @@ Float = NDArray[np.float64]
 
 ERROR_LEVEL, WARNING_LEVEL = 0.001, 0.01
 """Two-sided probabilities of a deviation so large in a sound gauge, below which it is an error or a warning."""
-_LEAST_OTHERS = 4
-"""Gauges that must agree before another can be accused."""
 _ZONE_FROM_H = 0.4
-"""Clock errors from here on, near a quarter of an hour, are time zones."""
-_QUARTER_H = 0.25
+"""Clock errors from here on, near what zones differ by, are time zones."""
+_ZONE_STEPS_H = (0.25, 0.5, 1.0)
+"""Zones differ by hours, some by half or quarter hours (tz database, 2024)."""
+_ZONE_SLACK_H = 0.03
+"""How near is near, where the clock is measured better than that."""
 _UNITS = {
     0.3048: "metres declared as feet",
     1 / 0.3048: "feet declared as metres",
@@ -42,114 +34,6 @@ _UNIT_SLACK = 0.1
 """A gain within this of a ratio of units, relatively, is that mistake: coasts change amplitudes by as much."""
 _SCATTER_DEG = 10.0
 """Phase scatter about the best clock error above which a clock does not explain it."""
-
-
-@dataclass(frozen=True, eq=False, kw_only=True)
-class Fingerprint:
-    """How one gauge departs from the wave at the others: what its faults are read from; arrays of shape (k,)."""
-
-    gauge: str
-    """Id of the gauge."""
-    names: tuple[str, ...]
-    """Constituents."""
-    speeds_deg_per_h: Float
-    """Their speeds. [degrees per hour]"""
-    phase_residual_deg: Float
-    """Phase lag less that expected from the other gauges. [degrees]"""
-    phase_sd_deg: Float
-    """Its standard deviation, the scatter between the others included. [degrees]"""
-    amplitude_ratio: Float
-    """Amplitude over that expected."""
-    clock: Delay
-    """Clock error that best explains the phases. [h]"""
-    clock_sd_h: float
-    """Its standard deviation, the scatter between the others included. [h]"""
-    clock_freedom: int
-    """Degrees of freedom of that."""
-    inverted: bool
-    """Whether the phases are explained far better by a record upside down."""
-    log_gain: float
-    """Logarithm of the mean amplitude ratio."""
-    log_gain_sd: float
-    """Its standard deviation."""
-    log_gain_freedom: int
-    """Degrees of freedom of that."""
-
-
-def fingerprints(fit: PropagationFit) -> tuple[Fingerprint, ...]:
-    """Measure each gauge against the wave at the others.
-
-    Parameters
-    ----------
-    fit : PropagationFit
-        Fit of the whole network.
-
-    Returns
-    -------
-    tuple of Fingerprint
-        Empty where too few gauges agree to judge another.
-    """
-    if fit.delay_fit is None:
-        return ()
-    prints = []
-    for gauge in range(len(fit.tides.ids)):
-        others = fit.tides.without(gauge)
-        line = fit_delays(others, tuple(np.delete(np.array(fit.delays, dtype=object), gauge)))
-        levels = fit_levels(others)
-        if line.used.sum() >= _LEAST_OTHERS:
-            prints.append(_fingerprint(fit.tides, gauge, others, line, levels))
-    return tuple(prints)
-
-
-def _fingerprint(tides: TideArrays, gauge: int, others: TideArrays, line: RobustFit, levels: RobustFit) -> Fingerprint:
-    place = np.array([1.0, tides.along_km[gauge]])
-    expected_h, line_sd_h = line.predict(place)
-    # Each constituent's own lag at the reference: a robust mean over the agreeing gauges, the joint delay taken off.
-    trusted = others.rows(np.flatnonzero(line.used))
-    steady = trusted.lag_deg - np.outer(
-        np.column_stack([np.ones(len(trusted.ids)), trusted.along_km]) @ line.coefficients, tides.speeds_deg_per_h
-    )
-    anchor = steady[0] + np.median(wrapped_deg(steady - steady[0]), axis=0)
-    residual = wrapped_deg(tides.lag_deg[gauge] - anchor - expected_h * tides.speeds_deg_per_h)
-    scatter = wrapped_deg(steady - anchor).std(axis=0, ddof=1)
-    sd = np.hypot(tides.lag_sd_deg[gauge], scatter)
-    upright = joint_delay(residual, sd, tides.speeds_deg_per_h)
-    overturned = joint_delay(residual, sd, tides.speeds_deg_per_h, turn_deg=180.0)
-    # Upside down and late by hours can look alike in one band: both bands, and the smaller delay, decide.
-    inverted = overturned.fit > upright.fit + 0.1 or (
-        overturned.fit > upright.fit - 0.02 and abs(overturned.delay_h) < 0.25 * abs(upright.delay_h)
-    )
-    clock = overturned if inverted else upright
-    expected_log, gain_sd, log_ratio = _amplitudes(tides, gauge, others, levels)
-    del expected_log
-    return Fingerprint(
-        gauge=tides.ids[gauge],
-        names=tides.names,
-        speeds_deg_per_h=tides.speeds_deg_per_h,
-        phase_residual_deg=residual,
-        phase_sd_deg=sd,
-        amplitude_ratio=np.exp(log_ratio),
-        clock=clock,
-        clock_sd_h=float(np.hypot(line_sd_h, clock.delay_sd_h)),
-        clock_freedom=line.freedom,
-        inverted=inverted,
-        log_gain=float(np.median(log_ratio)),
-        log_gain_sd=gain_sd,
-        log_gain_freedom=levels.freedom,
-    )
-
-
-def _amplitudes(tides: TideArrays, gauge: int, others: TideArrays, levels: RobustFit) -> tuple[float, float, Float]:
-    """Expected level, its standard deviation, and log amplitude over expected of each constituent."""
-    design = level_design(tides.along_km, tides.offshore_km)
-    if design.shape[1] != len(levels.coefficients):  # the gauge alone made a distance vary
-        design = np.column_stack([design[:, :1], np.zeros((len(design), len(levels.coefficients) - 1))])
-    expected, sd = levels.predict(design[gauge])
-    logs = np.log(others.amplitude_m[levels.used])
-    steady = logs - (design[np.arange(len(design)) != gauge][levels.used] @ levels.coefficients)[:, None]
-    anchor = np.median(steady, axis=0)
-    own = float(np.sqrt(np.mean(tides.log_amplitude_sd[gauge] ** 2) / len(tides.names)))
-    return expected, float(np.hypot(sd, own)), np.log(tides.amplitude_m[gauge]) - anchor - expected
 
 
 def gauge_faults(prints: tuple[Fingerprint, ...], settings: AuditSettings) -> tuple[Finding, ...]:
@@ -178,32 +62,54 @@ def _phase_findings(p: Fingerprint, settings: AuditSettings) -> list[Finding]:
     turn = 180.0 if p.inverted else 0.0
     left = wrapped_deg(p.phase_residual_deg - turn - p.speeds_deg_per_h * p.clock.delay_h)
     shown = _list(p.names, wrapped_deg(p.phase_residual_deg), "+.1f", " deg")
-    found: list[Finding] = []
     scatter = float(np.sqrt(np.mean(left**2)))
     if scatter > max(_SCATTER_DEG, 4.0 * float(np.sqrt(np.mean(p.phase_sd_deg**2)))):
         worst = int(np.argmax(np.abs(p.phase_residual_deg)))
         evidence = f"phase lags depart by {shown} from the other gauges' wave, and no clock error explains it"
         value, sd = float(p.phase_residual_deg[worst]), float(p.phase_sd_deg[worst])
         return [_finding(p.gauge, "phase_outlier", value, sd, "warning", evidence)]
-    if p.inverted:
-        evidence = f"phase lags depart by {shown}: every constituent is turned by about 180 degrees"
-        found.append(_finding(p.gauge, "inverted", 1.0, float("nan"), "error", evidence))
+    return _inversion(p, shown) + _clock(p, shown, settings)
+
+
+def _inversion(p: Fingerprint, shown: str) -> list[Finding]:
+    if not p.inverted:
+        return []
+    sure = p.inverted_lead >= CLEAR_LEAD
+    evidence = f"phase lags depart by {shown}: every constituent is turned by about 180 degrees"
+    if not sure:
+        evidence += ", which so few constituents hardly tell from a clock error of hours"
+    return [_finding(p.gauge, "inverted", 1.0, float("nan"), "error" if sure else "warning", evidence)]
+
+
+def _clock(p: Fingerprint, shown: str, settings: AuditSettings) -> list[Finding]:
     delay, sd = p.clock.delay_h, p.clock_sd_h
     severity = _severity(delay / sd, p.clock_freedom, abs(delay) * 60.0 / settings.clock_error_min)
     if severity is None:
-        return found
-    # Counting the nearest quarter hour as a zone wants the clock to be measured that well.
-    zone = abs(delay) >= _ZONE_FROM_H and abs(delay - _QUARTER_H * round(delay / _QUARTER_H)) < max(3.0 * sd, 0.03)
+        return []
     late = "later" if delay > 0 else "earlier"
-    pattern = f"phase lags depart by {shown}: in proportion to speed, as a clock error does"
-    if zone:
-        nearest = _QUARTER_H * round(delay / _QUARTER_H)
-        evidence = f"{pattern}; recorded times are {abs(nearest):g} h {late} than the tide's: check the time zone"
-        found.append(_finding(p.gauge, "time_zone", delay, sd, severity, evidence))
-    else:
-        evidence = f"{pattern}; recorded times are {60 * abs(delay):.1f} min {late} than the tide's"
-        found.append(_finding(p.gauge, "clock_offset", 60.0 * delay, 60.0 * sd, severity, evidence))
-    return found
+    evidence = f"phase lags depart by {shown}: in proportion to speed, as a clock error does"
+    if min(p.clock.lead, p.inverted_lead) < CLEAR_LEAD:
+        severity = "warning"
+        evidence += " (other explanations, whole periods apart or upside down, are nearly as good)"
+    zone = _zone_h(delay, sd)
+    if zone is not None:
+        evidence += f"; recorded times are {abs(zone):g} h {late} than the tide's: check the time zone"
+        return [_finding(p.gauge, "time_zone", delay, sd, severity, evidence)]
+    evidence += f"; recorded times are {60 * abs(delay):.1f} min {late} than the tide's"
+    return [_finding(p.gauge, "clock_offset", 60.0 * delay, 60.0 * sd, severity, evidence)]
+
+
+def _zone_h(delay_h: float, sd_h: float) -> float | None:
+    """Difference of zones that a clock error is; None where it is none, or the error is too vague to tell."""
+    if abs(delay_h) < _ZONE_FROM_H:
+        return None
+    slack = max(2.5 * sd_h, _ZONE_SLACK_H)
+    for step in _ZONE_STEPS_H:
+        nearest = step * round(delay_h / step)
+        # A step that the slack fills would take any clock error for a zone.
+        if 3.0 * slack < step and abs(delay_h - nearest) < slack:
+            return nearest
+    return None
 
 
 def _amplitude_findings(p: Fingerprint, settings: AuditSettings) -> list[Finding]:
@@ -219,7 +125,7 @@ def _amplitude_findings(p: Fingerprint, settings: AuditSettings) -> list[Finding
         evidence = f"amplitude ratios to the other gauges' wave are {shown}, too unlike each other for one gain"
         return [_finding(p.gauge, "amplitude_outlier", gain, sd, "warning", evidence)]
     unit = min(_UNITS, key=lambda ratio: abs(np.log(ratio) - p.log_gain))
-    if abs(np.log(unit) - p.log_gain) < max(_UNIT_SLACK, 3.0 * p.log_gain_sd):
+    if abs(np.log(unit) - p.log_gain) < np.clip(3.0 * p.log_gain_sd, _UNIT_SLACK, 2.0 * _UNIT_SLACK):
         evidence = f"every amplitude is about {gain:.2f} times the others' ({shown}): {_UNITS[unit]} ({unit:.4g})"
         return [_finding(p.gauge, "unit_scale", gain, sd, severity, evidence)]
     evidence = f"every amplitude is about {gain:.3f} times what the other gauges' wave gives ({shown})"

@@ -18,6 +18,8 @@ WAVE_CONSTITUENTS = ("M2", "S2", "N2", "K2", "K1", "O1", "P1", "Q1")
 """Constituents that serve for waves: astronomical, strong nearly everywhere, and spread over two bands."""
 CLEAR_RATIO = 10.0
 """An amplitude serves where it is this many of its own standard deviations."""
+FEW_SHARE = 0.5
+"""A gauge with no more than this share of the constituents that the median gauge shows clearly is left out."""
 UNKNOWN_SD = 0.01
 """Relative amplitude error, and phase error in radians, of constants that state none."""
 
@@ -60,10 +62,6 @@ class TideArrays:
     log_amplitude_sd: Float
     """Relative standard deviations of the amplitudes."""
 
-    def without(self, gauge: int) -> TideArrays:
-        """The same without one gauge, by its row."""
-        return self.rows(np.delete(np.arange(len(self.ids)), gauge))
-
     def rows(self, rows: NDArray[np.int64]) -> TideArrays:
         """Some gauges only."""
         return TideArrays(
@@ -85,7 +83,8 @@ def tide_arrays(gauges: Sequence[GaugeTide], *, constituents: Sequence[str] | No
     Parameters
     ----------
     gauges : sequence of GaugeTide
-        All gauges; those that cannot enter the fit are left out.
+        All gauges; those that cannot enter the fit are left out, and those that show few constituents clearly (a dead
+        sensor, a table of one constituent) beside the others, which would leave the others none in common.
     constituents : sequence of str, optional
         Constituents to use, `WAVE_CONSTITUENTS` by default.
 
@@ -95,12 +94,19 @@ def tide_arrays(gauges: Sequence[GaugeTide], *, constituents: Sequence[str] | No
         Constituents that every gauge has, fitted or published (an inferred one carries no evidence of its own),
         well above their errors.
     """
-    chosen = [gauge for gauge in gauges if gauge.in_fit]
     wanted = [resolve(name).name for name in (constituents or WAVE_CONSTITUENTS)]
+    able = [gauge for gauge in gauges if gauge.in_fit]
+    clear = [{name for name in wanted if _clear(gauge.constants, name)} for gauge in able]
+    usual = float(np.median([len(names) for names in clear])) if able else 0.0
+    chosen = [gauge for gauge, names in zip(able, clear, strict=True) if len(names) > FEW_SHARE * usual]
     names = [name for name in wanted if chosen and all(_clear(gauge.constants, name) for gauge in chosen)]
     names.sort(key=lambda name: resolve(name).speed_deg_per_h)
-    tables = [gauge.constants.select(names) for gauge in chosen]
-    shape = (len(chosen), len(names))
+    return _stacked(chosen, names)
+
+
+def _stacked(gauges: Sequence[GaugeTide], names: Sequence[str]) -> TideArrays:
+    tables = [gauge.constants.select(names) for gauge in gauges]
+    shape = (len(gauges), len(names))
 
     def stack(field: str) -> Float:
         return np.array([getattr(table, field) for table in tables], dtype=np.float64).reshape(shape)
@@ -109,11 +115,11 @@ def tide_arrays(gauges: Sequence[GaugeTide], *, constituents: Sequence[str] | No
     relative = stack("amplitude_sd_m") / amplitude
     lag_sd = stack("phase_lag_sd_deg")
     return TideArrays(
-        ids=tuple(gauge.station.id for gauge in chosen),
+        ids=tuple(gauge.station.id for gauge in gauges),
         names=tuple(names),
         speeds_deg_per_h=speeds_deg_per_h(names),
-        along_km=np.array([gauge.station.along_coast_km for gauge in chosen], dtype=np.float64),
-        offshore_km=np.array([gauge.station.offshore_km or 0.0 for gauge in chosen], dtype=np.float64),
+        along_km=np.array([gauge.station.along_coast_km for gauge in gauges], dtype=np.float64),
+        offshore_km=np.array([gauge.station.offshore_km or 0.0 for gauge in gauges], dtype=np.float64),
         lag_deg=stack("phase_lag_deg"),
         lag_sd_deg=np.where(np.isfinite(lag_sd), lag_sd, np.rad2deg(UNKNOWN_SD)),
         amplitude_m=amplitude,

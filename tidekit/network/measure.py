@@ -5,10 +5,12 @@ from __future__ import annotations
 from collections.abc import Sequence
 from dataclasses import dataclass
 
-from tidekit.network.coast import CoastTheory, coast_theory
-from tidekit.network.faults import Fingerprint, fingerprints, gauge_faults
+from tidekit.network.coast import CoastTheory, coast_bearing_deg, coast_theory
+from tidekit.network.faults import gauge_faults
+from tidekit.network.fingerprints import Fingerprint, fingerprints
+from tidekit.network.fitting import fit_propagation
 from tidekit.network.gauges import GaugeTide, tide_arrays
-from tidekit.network.propagation import PropagationFit, fit_propagation
+from tidekit.network.propagation import PropagationFit
 from tidekit.quality.findings import Finding
 from tidekit.records.network import AuditSettings, CoastSpec
 
@@ -44,7 +46,9 @@ def measure_network(gauges: Sequence[GaugeTide], coast: CoastSpec, settings: Aud
     NetworkMeasure
         Its verdict is `undetermined` where there are too few gauges to tell.
     """
-    theory = coast_theory(coast, [gauge.station for gauge in gauges if gauge.in_fit])
-    fit = fit_propagation(tide_arrays(gauges), theory, confidence=settings.confidence)
+    stations = [gauge.station for gauge in gauges if gauge.in_fit]
+    theory = coast_theory(coast, stations)
+    bearing_deg = coast_bearing_deg(stations)
+    fit = fit_propagation(tide_arrays(gauges), theory, bearing_deg=bearing_deg, confidence=settings.confidence)
     prints = fingerprints(fit)
     return NetworkMeasure(propagation=fit, theory=theory, fingerprints=prints, findings=gauge_faults(prints, settings))

@@ -8,7 +8,7 @@ import numpy as np
 from matplotlib.axes import Axes
 from numpy.typing import NDArray
 
-from tidekit.network.faults import Fingerprint
+from tidekit.network.fingerprints import Fingerprint
 from tidekit.network.measure import NetworkMeasure
 from tidekit.network.propagation import PropagationFit
 from tidekit.records.network import CoastSpec

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 from numpy.typing import NDArray
@@ -100,9 +100,9 @@ class Coast:
         )
 
 
-def some_coast(random: np.random.Generator, count: int, **options: object) -> Coast:
+def some_coast(random: np.random.Generator, count: int, **options: float) -> Coast:
     """A coast of `count` gauges at uneven places 40 to 110 km apart, two of them offshore."""
     along = np.cumsum(random.uniform(40.0, 110.0, count))
     offshore = np.zeros(count)
     offshore[random.choice(count, 2, replace=False)] = random.uniform(40.0, 150.0, 2)
-    return Coast(along_km=along - along[0], offshore_km=offshore, **options)  # type: ignore[arg-type]
+    return replace(Coast(along_km=along - along[0], offshore_km=offshore), **options)

@@ -45,7 +45,7 @@ def test_the_tide_goes_north_with_the_coast_on_its_right(year: int, tmp_path: Pa
     document = json.loads((tmp_path / "out" / "audit.json").read_text())
     together = document["propagation"][-1]
     assert 280.0 < together["direction_deg"] < 360.0
-    assert "with the coast on the right" in document["verdict_evidence"]
+    assert "with the coast on its right" in document["verdict_evidence"]
     used = {gauge["gauge"] for gauge in document["gauges"] if gauge["in_wave_fit"]}
     assert used == {gauge for gauge, place in GAUGES.items() if place[3]}
     # Bays and straits delay the tide: no sound gauge may be accused of a wrong clock, zone or unit.

@@ -161,7 +161,7 @@ DRAWS, SOUND_DRAWS = 6, 20
 @pytest.mark.parametrize("kind", [kind for kind in KINDS if kind != "sound"])
 def test_faults_are_found_and_the_sound_are_left_alone(kind: str) -> None:
     tally = study(kind, DRAWS)
-    # The study of 300 draws finds 99 % of single faults, 95 % or more of four at once, which at times leave no majority.
+    # The study of 300 draws finds 99 % of single faults, 95 % of four at once, which at times leave no majority.
     most = 4 if kind in ("three of any", "four of any") else 1
     assert tally.faults - tally.found <= most
     assert tally.accused <= most

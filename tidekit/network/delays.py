@@ -7,6 +7,7 @@ fortnight or more, so a search over delays resolves the wrapping without assumin
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
@@ -74,15 +75,15 @@ def joint_delay(
     """
     turned = difference_deg - turn_deg
     weights = 1.0 / (sd_deg**2 + MODEL_SD_DEG**2)
+    trial, cosines, sines = _trials(tuple(speeds_deg_per_h.tolist()), search_h)
+    rigid, angle = weights * np.rad2deg(1.0) ** 2, np.deg2rad(turned)
+    likely = cosines @ (rigid * np.cos(angle)) + sines @ (rigid * np.sin(angle)) - rigid.sum()
     fastest = float(speeds_deg_per_h.max())
-    steps = int(np.ceil(search_h * fastest / _TRIAL_DEG))  # zero is among the trials
-    trial = np.arange(-steps, steps + 1) * (_TRIAL_DEG / fastest)
-    likely = _log_likelihood(turned, weights, np.multiply.outer(trial, speeds_deg_per_h))
     delay = float(trial[np.argmax(likely - np.log1p((trial / usual_h) ** 2))])
     slopes = weights * speeds_deg_per_h / np.sum(weights * speeds_deg_per_h**2)
     for _ in range(3):  # Gauss-Newton on a remainder that is small after the search
         delay += float(slopes @ wrapped_deg(turned - speeds_deg_per_h * delay))
-    reached = float(_log_likelihood(turned, weights, speeds_deg_per_h * delay))
+    reached = float(rigid @ (np.cos(np.deg2rad(turned - speeds_deg_per_h * delay)) - 1.0))
     elsewhere = likely[np.abs(trial - delay) > 180.0 / fastest]
     return Delay(
         delay_h=delay,
@@ -92,10 +93,14 @@ def joint_delay(
     )
 
 
-def _log_likelihood(turned_deg: Float, weights: Float, expected_deg: Float) -> Float:
-    """Of expected phases, shape (..., k), in the last axis: shape (...)."""
-    left = np.deg2rad(turned_deg - expected_deg)
-    return np.asarray((np.cos(left) - 1.0) @ (weights * np.rad2deg(1.0) ** 2))
+@lru_cache(maxsize=8)
+def _trials(speeds_deg_per_h: tuple[float, ...], search_h: float) -> tuple[Float, Float, Float]:
+    """Trial delays, shape (t,), zero among them, and cosine and sine of the phases they give, shape (t, k)."""
+    step = _TRIAL_DEG / max(speeds_deg_per_h)
+    most = int(np.ceil(search_h / step))
+    trial = step * np.arange(-most, most + 1)
+    angle = np.deg2rad(np.outer(trial, speeds_deg_per_h))
+    return trial, np.cos(angle), np.sin(angle)
 
 
 def wrapped_deg(angle_deg: Float) -> Float:

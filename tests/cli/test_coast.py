@@ -200,3 +200,9 @@ def test_a_place_that_cannot_be_written_is_said(tmp_path: Path, capsys: pytest.C
     assert heard.out == ""
     assert heard.err.count("\n") == 1
     assert "cannot write here" in heard.err
+
+
+def test_a_wave_of_another_depth_is_inconsistent(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    found = document(coast(tmp_path, coast_keys="depth_m = 400.0"), capsys)
+    assert found["verdict"] == "inconsistent"
+    assert "outside" in str(found["evidence"])

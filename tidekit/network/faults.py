@@ -91,9 +91,12 @@ def _clock(p: Fingerprint, shown: str, settings: AuditSettings) -> list[Finding]
     if min(p.clock.lead, p.inverted_lead) < CLEAR_LEAD:
         severity = "warning"
         evidence += " (other explanations, whole periods apart or upside down, are nearly as good)"
-    zone = _zone_h(delay, sd)
-    if zone is not None:
-        evidence += f"; recorded times are {abs(zone):g} h {late} than the tide's: check the time zone"
+    zone, vague = _zone_h(delay, sd), _hours_vaguely(delay, sd)
+    if zone is not None or vague:
+        size = f"{abs(zone):g} h" if zone is not None else f"about {abs(delay):.1f} h"
+        evidence += f"; recorded times are {size} {late} than the tide's: check the time zone"
+        if vague:
+            evidence += " (too few gauges agree to tell which)"
         return [_finding(p.gauge, "time_zone", delay, sd, severity, evidence)]
     evidence += f"; recorded times are {60 * abs(delay):.1f} min {late} than the tide's"
     return [_finding(p.gauge, "clock_offset", 60.0 * delay, 60.0 * sd, severity, evidence)]
@@ -110,6 +113,12 @@ def _zone_h(delay_h: float, sd_h: float) -> float | None:
         if 3.0 * slack < step and abs(delay_h - nearest) < slack:
             return nearest
     return None
+
+
+def _hours_vaguely(delay_h: float, sd_h: float) -> bool:
+    """Whether a clock is wrong by an hour or more, too vaguely to tell zones apart: clocks alone rarely are."""
+    slack = 2.5 * sd_h
+    return 3.0 * slack >= max(_ZONE_STEPS_H) and abs(delay_h) - slack >= 1.0
 
 
 def _amplitude_findings(p: Fingerprint, settings: AuditSettings) -> list[Finding]:

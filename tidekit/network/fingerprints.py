@@ -12,10 +12,14 @@ from dataclasses import dataclass
 import numpy as np
 from numpy.typing import NDArray
 
+from tidekit.network.agreement import Scatter
+from tidekit.network.coast import CoastTheory
 from tidekit.network.delays import Delay, joint_delay, wrapped_deg
 from tidekit.network.gauges import TideArrays
 from tidekit.network.lines import (
+    DELAY_SCATTER,
     JUDGING_FREEDOM,
+    LEVEL_SCATTER,
     SHELF_SHARE,
     delay_design,
     delay_prior,
@@ -26,11 +30,13 @@ from tidekit.network.lines import (
 )
 from tidekit.network.propagation import PropagationFit
 from tidekit.network.robust_line import RobustFit
+from tidekit.network.verdict import speed_allowed
 
 Float = NDArray[np.float64]
 
-_LEAST_OTHERS = 4
-"""Gauges that must agree before another can be measured against them."""
+_LEAST_OTHERS, _ENOUGH_OTHERS = 3, 4
+"""Gauges that must agree before another can be measured against them, and before they also tell its place from a
+fault: with fewer, what a bay does is part of the error, and only gross faults stand out."""
 _USUAL_CLOCK_H = 0.25
 """Usual size of clock errors: an alias of hours is taken only where it explains the phases better."""
 _INVERTED_HANDICAP = 4.0
@@ -86,16 +92,24 @@ def fingerprints(fit: PropagationFit) -> tuple[Fingerprint, ...]:
     """
     if fit.delay_fit is None:
         return ()
-    tides = fit.tides
+    tides, theory = fit.tides, _judge(fit)
     delays, levels = delay_design(tides.along_km), level_design(tides.along_km, tides.offshore_km)
-    slowness, decay, prints = delay_prior(fit.theory), level_prior(fit.theory, SHELF_SHARE), []
+    slowness, decay, prints = delay_prior(fit.theory), level_prior(theory, SHELF_SHARE), []
     for gauge in range(len(tides.ids)):
         others = np.delete(np.arange(len(tides.ids)), gauge)
         line = fit_delays(delays[others], tuple(fit.delays[n] for n in others), slowness, belief=JUDGING_FREEDOM)
         if line.used.sum() >= _LEAST_OTHERS:
             level = fit_levels(tides.rows(others), levels[others], decay, belief=JUDGING_FREEDOM)
-            prints.append(_fingerprint(tides, gauge, _Wave(others, delays, line), _Wave(others, levels, level)))
+            waves = _Wave(others, delays, line, DELAY_SCATTER), _Wave(others, levels, level, LEVEL_SCATTER)
+            prints.append(_fingerprint(tides, gauge, *waves))
     return tuple(prints)
+
+
+def _judge(fit: PropagationFit) -> CoastTheory | None:
+    """The coast's theory; None where the measured speed refutes it, as then its decay offshore judges nobody."""
+    together = fit.groups[-1]
+    ends = together.slowness_low_h_per_km, together.slowness_high_h_per_km
+    return fit.theory if fit.theory is not None and speed_allowed(*ends, fit.theory) else None
 
 
 @dataclass(frozen=True)
@@ -105,6 +119,7 @@ class _Wave:
     others: NDArray[np.int64]
     design: Float
     line: RobustFit
+    scatter: Scatter
 
     @property
     def agreeing(self) -> NDArray[np.int64]:
@@ -114,6 +129,11 @@ class _Wave:
     def expected(self) -> Float:
         """What the line gives at every gauge of the network."""
         return self.design @ self.line.coefficients
+
+    def error(self, gauge: int) -> float:
+        """Standard deviation of what it gives at a gauge, that of the gauge's place included."""
+        place = self.scatter.above if len(self.agreeing) < _ENOUGH_OTHERS else 0.0
+        return float(np.hypot(self.line.predict(self.design[gauge])[1], place))
 
 
 def _fingerprint(tides: TideArrays, gauge: int, delay: _Wave, level: _Wave) -> Fingerprint:
@@ -125,7 +145,6 @@ def _fingerprint(tides: TideArrays, gauge: int, delay: _Wave, level: _Wave) -> F
     lead = _belief(overturned) - _INVERTED_HANDICAP - _belief(upright)
     clock = overturned if lead > 0 else upright
     log_ratio, gain_sd = _amplitudes(tides, gauge, level)
-    own_sd = float(np.hypot(delay.line.predict(delay.design[gauge])[1], clock.delay_sd_h))
     return Fingerprint(
         gauge=tides.ids[gauge],
         names=tides.names,
@@ -134,7 +153,7 @@ def _fingerprint(tides: TideArrays, gauge: int, delay: _Wave, level: _Wave) -> F
         phase_sd_deg=sd,
         amplitude_ratio=np.exp(log_ratio),
         clock=clock,
-        clock_sd_h=own_sd,
+        clock_sd_h=float(np.hypot(delay.error(gauge), clock.delay_sd_h)),
         clock_freedom=delay.line.freedom,
         inverted=lead > 0,
         inverted_lead=abs(lead),
@@ -164,5 +183,4 @@ def _amplitudes(tides: TideArrays, gauge: int, level: _Wave) -> tuple[Float, flo
     steady = np.log(tides.amplitude_m) - level.expected()[:, None]
     anchor = np.median(steady[level.agreeing], axis=0)
     own = float(np.sqrt(np.mean(tides.log_amplitude_sd[gauge] ** 2) / len(tides.names)))
-    between = level.line.predict(level.design[gauge])[1]
-    return steady[gauge] - anchor, float(np.hypot(between, own))
+    return steady[gauge] - anchor, float(np.hypot(level.error(gauge), own))

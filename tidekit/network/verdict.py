@@ -94,6 +94,13 @@ def group_verdict(measured: Measured, theory: CoastTheory | None) -> Verdict:
     return Verdict("consistent", "; ".join(s.text for s in (way, fast, spread, across) if s.text))
 
 
+def speed_allowed(low_h_per_km: float, high_h_per_km: float, theory: CoastTheory) -> bool:
+    """Whether an interval of signed slowness holds any that real coasts allow the theory's wave, its way included."""
+    low, high = sorted(3.6 * theory.sense * theory.wave.speed_m_per_s * end for end in (low_h_per_km, high_h_per_km))
+    least, most = SPEED_TOLERANCE
+    return low <= 1.0 / least and high >= 1.0 / most
+
+
 @dataclass(frozen=True)
 class _Sentence:
     text: str
@@ -106,6 +113,10 @@ def _silence(measured: Measured, theory: CoastTheory | None) -> str:
     if measured.gauges < 3:
         few = f"only {measured.gauges} of {measured.of} gauges agree on one wave; three are the least that test it"
         return few if theory is None else f"{few} (most likely it {_way(measured, theory).text})"
+    if measured.gauges == 3 and measured.of > 4:
+        # A line through three leaves one thing to test, and among five there are ten threes.
+        known = "" if theory is None else f" (most likely it {_way(measured, theory).text})"
+        return f"only 3 of {measured.of} gauges agree on one wave, as three may by chance{known}"
     if not measured.whole_periods_known:
         return "the constituents leave open how many whole periods the travel takes; two close in speed would tell"
     if measured.gauges_lead < RIVAL_LEAD:

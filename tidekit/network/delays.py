@@ -98,8 +98,8 @@ def _trials(speeds_deg_per_h: tuple[float, ...], search_h: float) -> tuple[Float
     """Trial delays, shape (t,), zero among them, and cosine and sine of the phases they give, shape (t, k)."""
     step = _TRIAL_DEG / max(speeds_deg_per_h)
     most = int(np.ceil(search_h / step))
-    trial = step * np.arange(-most, most + 1)
-    angle = np.deg2rad(np.outer(trial, speeds_deg_per_h))
+    trial: Float = step * np.arange(-most, most + 1, dtype=np.float64)
+    angle: Float = np.deg2rad(np.outer(trial, speeds_deg_per_h))
     return trial, np.cos(angle), np.sin(angle)
 
 

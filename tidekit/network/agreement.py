@@ -107,19 +107,39 @@ def agreeing(
     """
     variances = sd**2 + scatter.scales()[:, None] ** 2
     candidates = _candidates(design, values, prior)
-    likely = _log_likelihood(values - candidates @ design.T, variances, scatter)
+    residual = values - candidates @ design.T
+    likely = _log_likelihood(residual, variances, scatter)
+
+    def climbed(pairs: NDArray[np.int64]) -> tuple[Float, NDArray[np.bool_]]:
+        rows, scales = np.unique(pairs, axis=0).T
+        evidence, share = _polished(design, values, variances[scales], candidates[rows], scatter, prior)
+        return evidence + scatter.log_prior()[scales], share > 0.5
+
     # The best line at every scatter, and the best of all pairs of line and scatter.
-    pairs = [(int(line), scale) for scale, line in enumerate(np.argmax(likely, axis=0))]
-    leading = np.argsort(-likely, axis=None, kind="stable")[:_BEST]
-    pairs += [(int(line), int(scale)) for line, scale in zip(*np.unravel_index(leading, likely.shape), strict=True)]
-    rows, scales = np.array(sorted(set(pairs))).T
-    evidence, share = _polished(design, values, variances[scales], candidates[rows], scatter, prior)
-    evidence += scatter.log_prior()[scales]
-    best, sound = int(np.argmax(evidence)), share > 0.5
-    # A line needs a gauge more than it has coefficients before anything agrees on it.
-    shared, width = (sound & sound[best]).sum(axis=1), design.shape[1]
-    rivals = evidence[(shared <= width) & (sound.sum(axis=1) > width)]
-    return sound[best], float(evidence[best] - rivals.max(initial=-np.inf))
+    at_every = np.column_stack([np.argmax(likely, axis=0), np.arange(likely.shape[1])])
+    evidence, sound = climbed(np.vstack([at_every, _leading(likely, _BEST)]))
+    used = sound[np.argmax(evidence)]
+    # Rivals are sought among lines that rest on other gauges to begin with: the best line's neighbours outnumber them.
+    starts = _others(_share(residual[:, None, :], variances, scatter) > 0.5, used, design.shape[1])
+    if not starts.any():
+        return used, float("inf")
+    rival, rests_on = climbed(_leading(np.where(starts, likely, -np.inf), min(_BEST, int(starts.sum()))))
+    rival = rival[_others(rests_on, used, design.shape[1])]
+    return used, float(evidence.max() - rival.max(initial=-np.inf))
+
+
+def _leading(likely: Float, number: int) -> NDArray[np.int64]:
+    """Most likely pairs of line and scatter, shape (number, 2)."""
+    leading = np.argsort(-likely, axis=None, kind="stable")[:number]
+    return np.column_stack(np.unravel_index(leading, likely.shape))
+
+
+def _others(sound: NDArray[np.bool_], used: NDArray[np.bool_], width: int) -> NDArray[np.bool_]:
+    """Which sets of sound gauges (..., n) are another agreement than the one used, shape (...).
+
+    A line needs a gauge more than it has coefficients before anything agrees on it.
+    """
+    return np.asarray(((sound & used).sum(axis=-1) <= width) & (sound.sum(axis=-1) > width))
 
 
 def _candidates(design: Float, values: Float, prior: Prior) -> Float:

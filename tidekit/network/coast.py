@@ -16,6 +16,9 @@ from tidekit.waves.rotation import GRAVITY_M_PER_S2
 
 Float = NDArray[np.float64]
 
+_TURNS = 60
+"""Turns of the search for a depth and a trapping scale that belong together; far more than it needs."""
+
 
 @dataclass(frozen=True, kw_only=True)
 class CoastTheory:
@@ -91,12 +94,11 @@ def _trapped_depth(coast: CoastSpec, latitude: float) -> float:
     if np.any(depths <= 0) or np.any(np.diff(distance) <= 0):
         message = "depth_cross_shore wants increasing distances and positive depths"
         raise AnalysisError(message)
-    depth = float(depths[-1])
-    for _ in range(60):  # a contraction: each turn shrinks the change by the shelf's share of the scale
-        radius = KelvinWave(depth, latitude).rossby_radius_km
-        x = np.linspace(0.0, 8.0 * radius, 20001)
-        weight = np.exp(-2.0 * x / radius)
-        depth = float(np.sum(weight * np.interp(x, distance, depths)) / np.sum(weight))
+    slopes, depth = np.diff(depths) / np.diff(distance), float(depths[-1])
+    for _ in range(_TURNS):  # a contraction: each turn shrinks the change by the shelf's share of the scale
+        energy_km = 0.5 * KelvinWave(depth, latitude).rossby_radius_km
+        # By parts, exactly: the depth where the profile begins, and its slopes weighted by the energy farther out.
+        depth = float(depths[0] - energy_km * np.sum(slopes * np.diff(np.exp(-distance / energy_km))))
     return depth
 
 

@@ -110,6 +110,8 @@ class _Sentence:
 def _silence(measured: Measured, theory: CoastTheory | None) -> str:
     """Why nothing can be judged; empty where it can."""
     low, best, high = measured.slowness
+    if not measured.whole_periods_known:
+        return "the constituents leave open how many whole periods the travel takes; two close in speed would tell"
     if measured.gauges < 3:
         few = f"only {measured.gauges} of {measured.of} gauges agree on one wave; three are the least that test it"
         return few if theory is None else f"{few} (most likely it {_way(measured, theory).text})"
@@ -117,8 +119,6 @@ def _silence(measured: Measured, theory: CoastTheory | None) -> str:
         # A line through three leaves one thing to test, and among five there are ten threes.
         known = "" if theory is None else f" (most likely it {_way(measured, theory).text})"
         return f"only 3 of {measured.of} gauges agree on one wave, as three may by chance{known}"
-    if not measured.whole_periods_known:
-        return "the constituents leave open how many whole periods the travel takes; two close in speed would tell"
     if measured.gauges_lead < RIVAL_LEAD:
         known = "" if theory is None else f": most likely it {_way(measured, theory).text}"
         return f"other gauges than the {measured.gauges} of {measured.of} that agree best tell of another wave{known}"

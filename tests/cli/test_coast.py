@@ -143,6 +143,15 @@ def test_a_late_clock_gives_exit_code_1(tmp_path: Path, capsys: pytest.CaptureFi
     text = capsys.readouterr().out
     assert "Gauges off the wave, left out of the speed: g4." in text
     assert "error: g4: clock_offset +12" in text
+    assert "if the gauge stands in one, mark it open_coast = false" in text
+
+
+def test_an_early_clock_is_not_put_down_to_a_bay(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    assert entry.main(["coast", str(coast(tmp_path, late_h={4: -12.0 / 60.0}))]) == 1
+    text = capsys.readouterr().out
+    assert "error: g4: clock_offset -12" in text
+    assert "earlier than the tide's." in text
+    assert "bay" not in text
 
 
 def test_a_gauge_inside_is_neither_used_nor_judged(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:

@@ -99,6 +99,8 @@ def _clock(p: Fingerprint, shown: str, settings: AuditSettings) -> list[Finding]
             evidence += " (too few gauges agree to tell which)"
         return [_finding(p.gauge, "time_zone", delay, sd, severity, evidence)]
     evidence += f"; recorded times are {60 * abs(delay):.1f} min {late} than the tide's"
+    if delay > 0:
+        evidence += "; a bay or a strait delays the tide alike: if the gauge stands in one, mark it open_coast = false"
     return [_finding(p.gauge, "clock_offset", 60.0 * delay, 60.0 * sd, severity, evidence)]
 
 

@@ -1,4 +1,4 @@
-"""Write the demonstration network: exports in two layouts, the network file, and the truth."""
+"""Write the demonstration network: exports in two layouts, the network file, the truth, and a word on all of them."""
 
 from __future__ import annotations
 
@@ -6,8 +6,8 @@ from pathlib import Path
 
 import numpy as np
 
-from tidekit.demo.coast import DEPTH_M, GAUGES, MEAN_LATITUDE_DEG, DemoGauge, wave
-from tidekit.demo.series import STEP_AT, DemoSeries, gauge_truth, make_series
+from tidekit.demo.coast import DEPTH_M, GAUGES, MEAN_LATITUDE_DEG, TIDE, DemoGauge, wave
+from tidekit.demo.series import STEP_AT, WEATHER_SPEED_M_PER_S, DemoSeries, gauge_truth, make_series
 from tidekit.files import write_text
 
 SEED = 20210719
@@ -35,7 +35,11 @@ def write_demo(folder: str | Path, *, seed: int = SEED) -> tuple[Path, ...]:
     """
     root = Path(folder)
     series = make_series(seed)
-    texts = {root / "network.toml": _network_text(), root / "truth.toml": _truth_text(seed)}
+    texts = {
+        root / "network.toml": _network_text(),
+        root / "truth.toml": _truth_text(seed),
+        root / "README.md": _readme_text(seed),
+    }
     for gauge in GAUGES:
         writer = {"commas": _commas, "semicolons": _semicolons}[gauge.layout]
         texts[root / _export_name(gauge)] = writer(gauge, series[gauge.id])
@@ -121,3 +125,29 @@ def _truth_text(seed: int) -> str:
             if kind == "datum_step":
                 lines.append(f'at_utc = "{STEP_AT}:00"')
     return "\n".join(lines) + "\n"
+
+
+def _readme_text(seed: int) -> str:
+    kelvin = wave()
+    far = max(gauge.offshore_km for gauge in GAUGES)
+    ratio = float(kelvin.amplitude_ratio(far))
+    return f"""# Avel coast, invented
+
+No such coast, harbour or gauge exists, and no height here was measured. Made by `tidekit demo` with seed {seed}; the
+same seed gives the same files. Not for navigation.
+
+The coast faces east in the southern hemisphere. Its tide is a Kelvin wave over {DEPTH_M:g} m of water: it runs
+north with the land on its left at {kelvin.speed_m_per_s:.2f} m/s, and {far:g} km offshore {ratio:.3f} of the
+coast's amplitude is left. To the tide of {len(TIDE)} constituents are added weather that passes along the coast as a
+shelf wave of {WEATHER_SPEED_M_PER_S:g} m/s, red noise of each place, the instrument's own noise, a tide that wanders a
+little, gaps of hours to days, and missing marks.
+
+| file | what |
+|---|---|
+| `network.toml` | the coast and its {len(GAUGES)} gauges, for `tidekit audit` |
+| `exports/*.csv` | hourly heights of 2021: commas, comment lines, metres, UTC |
+| `exports/*.txt` | another layout: semicolons, decimal commas, day first, a clock at UTC+6, -99,000 where missing |
+| `truth.toml` | what is wrong with four of the gauges, and the wave's true speed and decay |
+
+Look into `truth.toml` last: the audit should find on its own a clock, a time zone, a unit and a datum step.
+"""

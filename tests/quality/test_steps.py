@@ -8,7 +8,7 @@ import scipy.signal
 from numpy.testing import assert_allclose
 
 from tidekit.quality.daily import DailyLevels, against_neighbours, daily_levels
-from tidekit.quality.steps import CRITICAL_T, find_steps, slow_sd_m
+from tidekit.quality.steps import CRITICAL_T, Step, find_steps, season_m, slow_sd_m
 
 DAYS = np.arange(7000, 7365)
 
@@ -100,3 +100,13 @@ def test_months_that_wander_weigh_against_a_step() -> None:
     spreads = [slow_sd_m(DAYS[:360], random.normal(0.0, 0.02, 12)[np.arange(360) // 30], 180) for _ in range(400)]
     # The mean square over 400 draws of 11 degrees of freedom is known to 2 %.
     assert_allclose(np.sqrt(np.mean(np.square(spreads))), 0.02 * np.sqrt(1 / 6 + 1 / 6), rtol=0.06)
+
+
+def test_the_season_beside_a_step_is_that_without_it() -> None:
+    """A year's sine with a step of 10 cm: exact, since both are in the model."""
+    days = np.arange(8000, 8365)
+    season = 0.05 * np.cos(2 * np.pi * days / 365.2422) - 0.02
+    step = Step(8200, 0.10, 0.01)
+    level = season + 0.10 * (days >= 8200)
+    level[50:60] = np.nan
+    assert_allclose(season_m(days, level, (step,)), season, atol=1e-12)

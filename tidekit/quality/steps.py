@@ -85,6 +85,18 @@ def find_steps(days: NDArray[np.int64], level_m: Float) -> tuple[Step, ...]:
     return tuple(sorted(steps, key=lambda step: step.day))
 
 
+def season_m(days: NDArray[np.int64], level_m: Float, steps: tuple[Step, ...]) -> Float:
+    """Mean and season of a level, fitted beside its steps as `find_steps` does, shape (d,). [m]
+
+    A harmonic fit bends the annual and semi-annual tide to follow a step; with this taken off the step stands plain.
+    """
+    known = np.isfinite(level_m)
+    columns = _smooth_columns(days)
+    stepped = level_m - np.sum([step.size_m * (days >= step.day) for step in steps], axis=0)
+    coefficients = np.linalg.lstsq(columns[known], stepped[known], rcond=None)[0]
+    return np.asarray(columns @ coefficients, dtype=np.float64)
+
+
 def slow_sd_m(day: NDArray[np.int64], left: Float, place: int) -> float:
     """Standard deviation of a step between two means of months, from the scatter of monthly means of what is left."""
     month = (day - day[0]) // _MONTH_DAYS

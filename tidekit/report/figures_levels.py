@@ -12,27 +12,37 @@ from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.datums.table import RANGES, DatumTable
 from tidekit.harmonic.results import HarmonicFit
 from tidekit.quality.daily import daily_levels
-from tidekit.report.style import BAD, GOOD, MUTED, finish
+from tidekit.report.style import BAD, GOOD, MUTED, finish, spread_labels
 
 Float = NDArray[np.float64]
 
 
 def draw_residuals(fits: Mapping[str, HarmonicFit], faulty: set[str], axes: Axes) -> Axes:
-    """*Do the records move together?* Daily non-tidal residuals, one strip a gauge, gaps left open."""
+    """*Do the records move together?* Daily non-tidal residuals, one strip a gauge, gaps left open.
+
+    Strips are a round number of centimetres apart; what reaches beyond its neighbours is cut there. Gauges of
+    `faulty` are drawn in the second colour and marked with a cross.
+    """
     levels = daily_levels([fit.t_h for fit in fits.values()], [fit.residual_m for fit in fits.values()])
     times = datetime64_from_hours(24.0 * levels.days + 12.0)
-    spread = float(np.nanmedian(np.nanstd(levels.level_m, axis=1)))
-    apart = max(6.0 * spread, 0.05)
+    apart = _round_step(5.0 * float(np.nanmedian(np.nanstd(levels.level_m, axis=1))))
     for row, gauge in enumerate(fits):
         base = -row * apart
         axes.axhline(base, color="#dddddd", linewidth=0.6)
         shown = np.clip(levels.level_m[row], -apart, apart)
         axes.plot(times, base + shown, color=BAD if gauge in faulty else GOOD, linewidth=0.8)
-    finish(axes, title=f"Daily residuals, {100 * apart:.0f} cm between strips", x="", y="")
-    axes.set_yticks([-row * apart for row in range(len(fits))], list(fits), fontsize=8)
+    finish(axes, title=f"Daily residuals; {100 * apart:g} cm from strip to strip", x="", y="")
+    names = [f"{gauge} ×" if gauge in faulty else gauge for gauge in fits]
+    axes.set_yticks([-row * apart for row in range(len(fits))], names, fontsize=8)
     axes.tick_params(axis="x", labelsize=8)
     axes.set_ylim(-(len(fits) - 0.3) * apart, 0.8 * apart)
     return axes
+
+
+def _round_step(least_m: float) -> float:
+    """The next of 5, 10, 20, 50 cm and so on. [m]"""
+    decade = 10.0 ** np.floor(np.log10(max(least_m, 0.05)))
+    return float(next(step * decade for step in (1.0, 2.0, 5.0, 10.0) if step * decade >= 0.999 * max(least_m, 0.05)))
 
 
 def draw_datum_ladder(table: DatumTable, axes: Axes) -> Axes:
@@ -54,12 +64,3 @@ def draw_datum_ladder(table: DatumTable, axes: Axes) -> Axes:
     finish(axes, title=f"{table.gauge}", x="", y=f"height above {above} [m]")
     axes.set_xticks([])
     return axes
-
-
-def spread_labels(heights: Float, least: float) -> Float:
-    """Label heights in order, at least so far apart, moved as little as a pass up and a pass down need."""
-    labels = np.array(heights, dtype=np.float64)
-    for n in range(1, len(labels)):
-        labels[n] = max(labels[n], labels[n - 1] + least)
-    excess = (labels[-1] - heights[-1]) / 2 if len(labels) else 0.0
-    return labels - excess

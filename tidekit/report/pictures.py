@@ -6,27 +6,31 @@ import html
 import io
 import re
 import zlib
-from collections.abc import Callable, Sequence
+from collections.abc import Callable
 
 from matplotlib import rc_context
 from matplotlib.axes import Axes
 from matplotlib.backends.backend_svg import FigureCanvasSVG
 from matplotlib.figure import Figure
 
+from tidekit.report.style import MUTED
+
 Draw = Callable[[Axes], Axes]
 
 
-def svg_picture(draws: Sequence[Draw], *, label: str, width: float = 6.4, height: float = 4.2) -> str:
-    """Draw figures side by side as one SVG element.
+def svg_picture(draw: Draw, *, label: str, width: float = 6.4, height: float = 4.2, trimmed: bool = False) -> str:
+    """Draw a figure as one SVG element.
 
     Parameters
     ----------
-    draws : sequence of callable
-        Each draws on the `Axes` it is given.
+    draw : callable
+        Draws on the `Axes` it is given.
     label : str
         What the picture shows, for those who cannot see it.
     width, height : float
         Size of the whole. [inches]
+    trimmed : bool
+        Cut off the empty margins that a fixed aspect leaves.
 
     Returns
     -------
@@ -36,10 +40,12 @@ def svg_picture(draws: Sequence[Draw], *, label: str, width: float = 6.4, height
     with rc_context({"font.size": 9, "svg.fonttype": "none", "svg.hashsalt": "tidekit"}):
         figure = Figure(figsize=(width, height), layout="constrained")
         FigureCanvasSVG(figure)
-        for axes, draw in zip(figure.subplots(1, len(draws), squeeze=False)[0], draws, strict=True):
-            draw(axes)
+        draw(figure.subplots())
+        # A picture may be copied out of its page: the caution goes with it.
+        figure.supxlabel("not for navigation", x=0.995, ha="right", fontsize=6, color=MUTED)
         stream = io.StringIO()
-        figure.savefig(stream, format="svg", metadata={"Date": None, "Creator": None})
+        box = "tight" if trimmed else None
+        figure.savefig(stream, format="svg", bbox_inches=box, metadata={"Date": None, "Creator": None})
     text = stream.getvalue()
     element = text[text.index("<svg") :]
     # Several pictures share a page: what one defines must not answer to another's name.

@@ -2,6 +2,11 @@
 
 from __future__ import annotations
 
+import math
+
+from tidekit.quality.findings import Finding
+from tidekit.records.station import Station
+
 VERDICTS = {
     "consistent": "The tide along this coast is a boundary wave",
     "inconsistent": "The tide along this coast is not the boundary wave that its depth would carry",
@@ -39,3 +44,35 @@ ADVICE = {
     "amplitude_outlier": "A gauge in a bay or strait wants open_coast = false.",
     "coverage": "Find the missing rows or the rest of the record.",
 }
+
+_RATIOS = ("unit_scale", "gain", "amplitude_outlier", "attenuated")
+_UNSIZED = ("inverted",)
+
+
+def size_in_words(finding: Finding) -> str:
+    """Size of a finding with its standard deviation and unit, no more digits than that gives; empty where it has none.
+
+    Examples
+    --------
+    >>> late = Finding(gauge="a", kind="clock_offset", value=11.118, value_sd=0.784, severity="error", evidence="")
+    >>> size_in_words(late)
+    '+11.12 ± 0.78 min'
+    >>> thin = Finding(gauge="a", kind="coverage", value=0.71, value_sd=math.nan, severity="note", evidence="")
+    >>> size_in_words(thin)
+    '71 %'
+    """
+    value, sd = finding.value, finding.value_sd
+    if finding.kind in _UNSIZED or not math.isfinite(value):
+        return ""
+    if finding.kind == "coverage":
+        return f"{100 * value:.0f} %"
+    sign = "" if finding.kind in _RATIOS else "+"
+    if not math.isfinite(sd) or sd <= 0.0:
+        return f"{value:{sign}.3g} {finding.unit}".rstrip()
+    decimals = max(1 - math.floor(math.log10(sd)), 0)
+    return f"{value:{sign}.{decimals}f} ± {sd:.{decimals}f} {finding.unit}".rstrip()
+
+
+def in_full(station: Station) -> str:
+    """Name and id: two gauges may share a name, none an id."""
+    return station.id if station.label == station.id else f"{station.label} ({station.id})"

@@ -8,9 +8,12 @@ import pandas as pd
 from numpy.testing import assert_allclose
 
 from tests.audit.conftest import SAMPLES, DemoAudit
+from tidekit.constituents.constants_table import read_constants
+from tidekit.demo.coast import TIDE
 
 TRUTH = tomllib.loads((SAMPLES / "truth.toml").read_text())
 WITHIN_SD = 3.0
+MILLIMETRES = 0.006  # three standard deviations of M2 under this coast's weather
 WITHIN_PART, STEP_WITHIN_PART = 0.10, 0.20
 """The promise of the README: a tenth of the size, a fifth for the step under weather."""
 
@@ -93,6 +96,36 @@ def test_the_document_holds_all_of_it(demo_audit: DemoAudit) -> None:
     for gauge in document["gauges"]:
         rows = gauge["rows"]
         assert rows["kept"] + rows["flagged"] + rows["rejected"] == rows["rows"]
+
+
+def test_tables_say_which_gauges_are_faulty(demo_audit: DemoAudit) -> None:
+    """Whoever takes a datum of the gauge in feet from the table reads there that it is wrong."""
+    wanted = {fault["gauge"]: fault["kind"] for fault in TRUTH["fault"]}
+    for name in ("constants.csv", "datums.csv"):
+        table = pd.read_csv(demo_audit.folder / name, keep_default_na=False)
+        said = table.groupby("gauge")["gauge_errors"].unique()
+        assert len(said) == 10
+        assert {gauge: list(kinds) for gauge, kinds in said.items()} == {g: [wanted.get(g, "")] for g in said.index}
+
+
+def test_gauges_are_summed_up(demo_audit: DemoAudit) -> None:
+    document = json.loads((demo_audit.folder / "audit.json").read_text())
+    by_id = {gauge["gauge"]: gauge for gauge in document["gauges"]}
+    sound = by_id["avelhead"]
+    assert sound["first_utc"] == "2021-01-01T00:00Z"
+    assert sound["coverage"] == round(sound["rows"]["kept"] / 8760, 5)  # hours of 2021
+    assert_allclose(sound["m2_amplitude_m"], TIDE["M2"][0], atol=MILLIMETRES)
+    assert_allclose(sound["m2_phase_lag_deg"], TIDE["M2"][1], atol=0.5)
+    diurnal, semidiurnal = TIDE["K1"][0] + TIDE["O1"][0], TIDE["M2"][0] + TIDE["S2"][0]
+    assert_allclose(sound["form_number"], diurnal / semidiurnal, atol=0.01)  # (K1 + O1) / (M2 + S2), Courtier (1938)
+    off = {gauge for gauge, row in by_id.items() if not row["agrees_with_wave"]}
+    assert off == {fault["gauge"] for fault in TRUTH["fault"] if fault["kind"] in ("clock_offset", "time_zone")}
+
+
+def test_constants_are_read_back(demo_audit: DemoAudit) -> None:
+    constants = read_constants(demo_audit.folder / "constants.csv", gauge="tarvik")
+    assert constants.nodal == "exact"
+    assert "M2" in constants.names
 
 
 def test_nothing_is_left_behind(demo_audit: DemoAudit) -> None:

@@ -4,8 +4,8 @@ from __future__ import annotations
 
 import json
 import math
+import os
 import shutil
-import tempfile
 from collections.abc import Mapping
 from dataclasses import asdict
 from pathlib import Path
@@ -14,6 +14,7 @@ from typing import Any, cast
 import pandas as pd
 
 from tidekit.audit.result import Audit
+from tidekit.audit.summary import gauges_table
 from tidekit.errors import InputError
 from tidekit.records.ledger import RowLedger
 
@@ -38,7 +39,6 @@ def audit_document(audit: Audit) -> dict[str, Any]:
     """Everything an audit says, as JSON values."""
     tables = {name.removesuffix(".csv"): _records(frame) for name, frame in audit_tables(audit).items()}
     propagation = audit.measure.propagation
-    agrees = dict(zip(propagation.tides.ids, propagation.used, strict=True))
     return {
         "network": audit.network.name,
         "verdict": audit.verdict,
@@ -47,14 +47,11 @@ def audit_document(audit: Audit) -> dict[str, Any]:
         "started_utc": audit.started_utc,
         "gauges": [
             {
-                "gauge": gauge.station.id,
-                "name": gauge.station.label,
-                "in_wave_fit": gauge.station.id in propagation.tides.ids,
-                "agrees_with_wave": bool(agrees.get(gauge.station.id, False)),
+                **row,
                 "rows": None if gauge.record is None else _ledger(gauge.record.ledger),
                 "layout": None if gauge.record is None else gauge.record.layout_name,
             }
-            for gauge in audit.gauges
+            for gauge, row in zip(audit.gauges, _records(_rounded(gauges_table(audit))), strict=True)
         ],
         "dispersion_p": propagation.dispersion_p if math.isfinite(propagation.dispersion_p) else None,
         "depth": audit.measure.theory.depth_note if audit.measure.theory else None,
@@ -65,17 +62,44 @@ def audit_document(audit: Audit) -> dict[str, Any]:
     }
 
 
+def check_folder(folder: str | Path) -> None:
+    """See that files can be left in a folder, before the work that is to go there.
+
+    Parameters
+    ----------
+    folder : path-like
+        May be absent.
+
+    Raises
+    ------
+    InputError
+        If it is a file, holds a folder by the name of one of `FILES`, or may not be written.
+    """
+    target = Path(folder)
+    if target.exists() and not target.is_dir():
+        message = "wanted a folder for the files of the audit, found a file; name another"
+        raise InputError(message, path=target)
+    for name in FILES:
+        if (target / name).is_dir():
+            message = "wanted to write a file here, found a folder; name another folder for the audit"
+            raise InputError(message, path=target / name)
+    above = next(place for place in (target, *target.absolute().parents) if place.exists())
+    if not above.is_dir() or not os.access(above, os.W_OK | os.X_OK):
+        message = "cannot write here; name a folder you may write to"
+        raise InputError(message, path=above)
+
+
 def write_audit(audit: Audit, folder: str | Path, *, page: str) -> tuple[Path, ...]:
-    """Write the six files into a folder; a failure leaves what was there.
+    """Write the files of an audit into a folder: all of them, or none.
 
     Parameters
     ----------
     audit : Audit
-        What to write.
+        What was found.
     folder : path-like
-        Made if absent; other files in it are left alone.
+        Made if absent; files of the same names are replaced, others stay.
     page : str
-        The report's HTML.
+        The report, as HTML.
 
     Returns
     -------
@@ -88,27 +112,39 @@ def write_audit(audit: Audit, folder: str | Path, *, page: str) -> tuple[Path, .
         If the folder cannot be written.
     """
     target = Path(folder)
+    check_folder(target)
     texts = {name: frame.to_csv(index=False, lineterminator="\n") for name, frame in audit_tables(audit).items()}
     texts["audit.json"] = json.dumps(audit_document(audit), indent=2, allow_nan=False) + "\n"
     texts["report.html"] = page
+    whole = {name: texts[name].encode("utf-8") for name in FILES}
     try:
-        target.mkdir(parents=True, exist_ok=True)
-        parts = Path(tempfile.mkdtemp(prefix=".audit.", dir=target))
-        try:
-            for name in FILES:
-                (parts / name).write_bytes(texts[name].encode("utf-8"))
-            # Only whole files are moved in, one rename each.
-            for name in FILES:
-                (parts / name).replace(target / name)
-        finally:
-            shutil.rmtree(parts, ignore_errors=True)
+        _leave(target, whole)
     except OSError as error:
         message = f"cannot write here ({error.strerror}); name a folder you may write to"
         raise InputError(message, path=target) from error
     return tuple(target / name for name in FILES)
 
 
-_DIGITS = {"speed_deg_per_h": 7, "latitude": 6}
+def _leave(target: Path, whole: Mapping[str, bytes]) -> None:
+    """Write all files beside their places, then move them there, one rename each; a new folder appears at once."""
+    new = not target.exists()
+    if new:
+        target.absolute().parent.mkdir(parents=True, exist_ok=True)
+    parts = (target.absolute().parent if new else target) / f".audit.{os.getpid()}.part"
+    parts.mkdir()
+    try:
+        for name, content in whole.items():
+            (parts / name).write_bytes(content)
+        if new:
+            parts.rename(target)
+        else:
+            for name in whole:
+                (parts / name).replace(target / name)
+    finally:
+        shutil.rmtree(parts, ignore_errors=True)
+
+
+_DIGITS = {"speed_deg_per_h": 7}
 
 
 def _rounded(frame: pd.DataFrame) -> pd.DataFrame:

@@ -67,15 +67,24 @@ class Audit:
         """Whether any finding is as grave as this or graver."""
         return any(SEVERITIES.index(f.severity) >= SEVERITIES.index(severity) for f in self.findings)
 
+    def errors_of(self, gauge: str) -> tuple[str, ...]:
+        """Kinds of the findings of severity `error` at a gauge: what its constants and datums carry."""
+        return tuple(dict.fromkeys(f.kind for f in self.findings if f.gauge == gauge and f.severity == "error"))
+
     def constants_table(self) -> pd.DataFrame:
-        """Rows of `constants.csv`."""
+        """Rows of `constants.csv`; its last column says what is wrong with the gauge that they come from."""
         frames = [constants_frame(g.constants, g.station.id) for g in self.gauges if g.constants is not None]
-        return pd.concat(frames, ignore_index=True)
+        return self._with_errors(pd.concat(frames, ignore_index=True))
 
     def datums_table(self) -> pd.DataFrame:
-        """Rows of `datums.csv`."""
+        """Rows of `datums.csv`; its last column says what is wrong with the gauge that they come from."""
         frames = [table.to_frame() for gauge in self.gauges for table in gauge.datums]
-        return pd.concat(frames, ignore_index=True) if frames else pd.DataFrame(columns=list(DATUM_COLUMNS))
+        if not frames:
+            return pd.DataFrame(columns=[*DATUM_COLUMNS, "gauge_errors"])
+        return self._with_errors(pd.concat(frames, ignore_index=True))
+
+    def _with_errors(self, frame: pd.DataFrame) -> pd.DataFrame:
+        return frame.assign(gauge_errors=[" ".join(self.errors_of(gauge)) for gauge in frame["gauge"]])
 
     def findings_table(self) -> pd.DataFrame:
         """Rows of `findings.csv`."""

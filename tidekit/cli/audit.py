@@ -3,19 +3,19 @@
 from __future__ import annotations
 
 import argparse
-import math
 import sys
 from pathlib import Path
 from typing import Any
 
 from tidekit.audit.execute import run_audit
-from tidekit.audit.outputs import audit_document, write_audit
+from tidekit.audit.outputs import audit_document, check_folder, write_audit
 from tidekit.audit.result import Audit
 from tidekit.cli.main import CAUTION, EXIT_DONE, EXIT_FINDINGS
 from tidekit.cli.output import print_json
 from tidekit.quality.findings import SEVERITIES
 from tidekit.records.network_file import read_network
 from tidekit.report.page import report_page
+from tidekit.report.words import size_in_words
 
 
 def add_parser(commands: Any) -> None:
@@ -41,6 +41,7 @@ def add_parser(commands: Any) -> None:
 def run(options: argparse.Namespace) -> int:
     """Audit the network."""
     network = read_network(options.network)
+    check_folder(options.out)
     watched = sys.stderr.isatty()
 
     def progress(text: str) -> None:
@@ -66,8 +67,7 @@ def _text(audit: Audit) -> str:
     lines = [f"{audit.network.name}: {len(audit.gauges)} gauges", f"Wave: {verdict.word}: {verdict.evidence}."]
     lines.append(f"Findings: {len(audit.findings)}" + (", the gravest first" if audit.findings else ""))
     for finding in audit.findings:
-        spread = f" +- {finding.value_sd:.3g}" if math.isfinite(finding.value_sd) else ""
-        size = f"{finding.value:+.4g}{spread} {finding.unit}" if math.isfinite(finding.value) else ""
+        size = size_in_words(finding).replace("±", "+-")  # every terminal has these
         lines.append(f"  {finding.severity:<8}{finding.gauge:<12}{finding.kind:<18}{size}".rstrip())
         lines.append(f"          {finding.evidence}.")
     return "\n".join(lines)

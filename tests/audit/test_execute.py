@@ -7,7 +7,9 @@ from pathlib import Path
 import numpy as np
 import pytest
 
+from tidekit.audit.execute import run_audit
 from tidekit.cli.main import main
+from tidekit.records.network_file import read_network
 
 SAMPLES = Path(__file__).parents[2] / "sample_series"
 HEAD = '[network]\nname = "n"\n[coast]\nside = "left"\ndepth_m = 60.0\n'
@@ -108,3 +110,25 @@ def test_a_wrong_network_file_is_one_line(
 def test_a_missing_network_is_named(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
     assert main(["audit", str(tmp_path / "no.toml"), "--out", str(tmp_path / "out")]) == 2
     assert "no.toml: cannot read this network file" in capsys.readouterr().err
+
+
+def test_the_first_wrong_gauge_of_the_file_is_named(tmp_path: Path, capsys: pytest.CaptureFixture[str]) -> None:
+    """Gauges are audited side by side; the complaint is the same each time all the same."""
+    good = "constituent,amplitude_m,phase_lag_deg\nM2,1.0,40\n"
+    text = HEAD
+    for n, content in enumerate((good, "constituent\nM2\n", good, "no table\n", "")):
+        (tmp_path / f"g{n}.csv").write_text(content)
+        text += gauge_table(f"g{n}", f'constants = "g{n}.csv"', 60.0 * n)
+    assert run(tmp_path, text) == 2
+    assert "g1.csv" in capsys.readouterr().err
+
+
+def test_progress_tells_of_every_gauge_and_of_the_end(tmp_path: Path) -> None:
+    (tmp_path / "a.csv").write_text("constituent,amplitude_m,phase_lag_deg\nM2,1.0,40\n")
+    tables = [gauge_table(gauge, 'constants = "a.csv"', 60.0 * n) for n, gauge in enumerate("abc")]
+    (tmp_path / "network.toml").write_text(HEAD + "".join(tables))
+    told: list[str] = []
+    audit = run_audit(read_network(tmp_path / "network.toml"), progress=told.append)
+    assert [gauge.station.id for gauge in audit.gauges] == ["a", "b", "c"]
+    assert told[:4] == [f"gauges: {n} of 3" + (f", {'abc'[n - 1]} done" if n else "") for n in range(4)]
+    assert told[-1] == "the records beside one another"

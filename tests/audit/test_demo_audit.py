@@ -13,6 +13,8 @@ from tidekit.demo.coast import TIDE
 
 TRUTH = tomllib.loads((SAMPLES / "truth.toml").read_text())
 WITHIN_SD = 3.0
+AUDIT_S = 60.0
+"""The README's promise for two cores, here in processor time: on two free cores the clock shows less."""
 MILLIMETRES = 0.006  # three standard deviations of M2 under this coast's weather
 WITHIN_PART, STEP_WITHIN_PART = 0.10, 0.20
 """The promise of the README: a tenth of the size, a fifth for the step under weather."""
@@ -52,6 +54,10 @@ def test_exit_code_and_files(demo_audit: DemoAudit) -> None:
     assert demo_audit.exit_code == 1
     left = {path.name for path in demo_audit.folder.iterdir()}
     assert left == {*COLUMNS, "audit.json", "report.html"}
+
+
+def test_it_is_done_within_the_promised_time(demo_audit: DemoAudit) -> None:
+    assert demo_audit.seconds < AUDIT_S
 
 
 def test_columns(demo_audit: DemoAudit) -> None:

@@ -66,8 +66,10 @@ def _text(audit: Audit) -> str:
     verdict = audit.measure.propagation.verdict
     lines = [f"{audit.network.name}: {len(audit.gauges)} gauges", f"Wave: {verdict.word}: {verdict.evidence}."]
     lines.append(f"Findings: {len(audit.findings)}" + (", the gravest first" if audit.findings else ""))
+    gauges = max((len(finding.gauge) for finding in audit.findings), default=0)
+    kinds = max((len(finding.kind) for finding in audit.findings), default=0)
     for finding in audit.findings:
         size = size_in_words(finding).replace("±", "+-")  # every terminal has these
-        lines.append(f"  {finding.severity:<8}{finding.gauge:<12}{finding.kind:<18}{size}".rstrip())
+        lines.append(f"  {finding.severity:<8}{finding.gauge:<{gauges}}  {finding.kind:<{kinds}}  {size}".rstrip())
         lines.append(f"          {finding.evidence}.")
     return "\n".join(lines)

@@ -112,6 +112,23 @@ def test_a_wrong_constants_table_is_named_and_leaves_nothing(network: Path, caps
     assert not (network.parent / "out").exists()
 
 
+class Terminal(io.StringIO):
+    def isatty(self) -> bool:
+        return True
+
+
+def test_a_terminal_sees_progress_and_is_left_clean(network: Path, monkeypatch: pytest.MonkeyPatch) -> None:
+    (network.parent / "g4.csv").write_text("no table\n")
+    terminal = Terminal()
+    monkeypatch.setattr("sys.stderr", terminal)
+    assert main(["audit", str(network), "--out", str(network.parent / "out")]) == 2
+    shown = terminal.getvalue()
+    assert "gauges: 4 of 5, g3 done" in shown
+    last = shown.split("\r\033[K")[-1]
+    assert last.startswith("tidekit audit: ")
+    assert "g4.csv" in last
+
+
 def test_the_folder_must_be_named(network: Path, capsys: pytest.CaptureFixture[str]) -> None:
     with pytest.raises(SystemExit, match="2"):
         main(["audit", str(network)])

@@ -10,7 +10,7 @@ from tidekit.network.measure import NetworkMeasure
 from tidekit.network.propagation import GroupFit
 from tidekit.report.figures_map import draw_map
 from tidekit.report.figures_wave import draw_amplitude_across, draw_phase_along_coast
-from tidekit.report.html_parts import Column, escape, figure, table
+from tidekit.report.html_parts import Column, escape, figure, sentence, table
 from tidekit.report.pictures import svg_picture
 from tidekit.report.words import KINDS
 
@@ -66,6 +66,10 @@ def wave_section(audit: Audit) -> str:
         height=5.6,
         trimmed=True,
     )
+    if measure.propagation.delay_fit is None:
+        return (
+            f'<h2>The wave</h2>\n<div class="pair">{figure(place, _where(audit))}<p>{_way(audit, together)}</p></div>'
+        )
     along = svg_picture(
         lambda axes: draw_phase_along_coast(measure, axes), label="Phase lag against distance along the coast"
     )
@@ -91,17 +95,16 @@ def _across(measure: NetworkMeasure, together: GroupFit) -> str:
 def _where(audit: Audit) -> str:
     outside = sum(not gauge.station.open_coast for gauge in audit.gauges)
     inner = f" Squares, {outside} of them, stand in inner waters and do not enter the wave fit." if outside else ""
-    return (
-        f"<strong>Where are the gauges?</strong> {len(audit.gauges)} gauges; the line joins those on the coast "
-        f"and is no shoreline.{inner}"
-    )
+    count = len(audit.gauges)
+    line = "; the line joins those on the coast and is no shoreline" if count > 1 else ""
+    return f"<strong>Where are the gauges?</strong> {count} gauge{'s' if count > 1 else ''}{line}.{inner}"
 
 
 def _way(audit: Audit, together: GroupFit) -> str:
     question = "<strong>Where does the tide go?</strong> "
     fit, theory = audit.measure.propagation, audit.measure.theory
     if fit.delay_fit is None or not math.isfinite(together.speed_m_per_s):
-        return question + "These gauges cannot tell."
+        return question + sentence(fit.verdict.evidence)
     low, high = together.speed_interval_m_per_s
     ends = f"{low:.1f} m/s or more" if math.isinf(high) else f"{low:.1f} to {high:.1f} m/s"
     toward = f"toward {together.direction_deg:.0f} deg " if math.isfinite(together.direction_deg) else ""

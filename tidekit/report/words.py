@@ -10,7 +10,7 @@ from tidekit.records.station import Station
 VERDICTS = {
     "consistent": "The tide along this coast is a boundary wave",
     "inconsistent": "The tide along this coast is not the boundary wave that its depth would carry",
-    "undetermined": "These gauges cannot decide whether the tide is a boundary wave",
+    "undetermined": "This network cannot decide whether its tide is a boundary wave",
 }
 
 KINDS = {

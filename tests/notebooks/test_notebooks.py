@@ -23,5 +23,9 @@ def test_it_runs(path: Path) -> None:
     client = nbclient.NotebookClient(notebook, timeout=300, resources={"metadata": {"path": str(ROOT)}})
     client.execute()
     shown = "".join(str(output) for cell in notebook.cells for output in cell.get("outputs", []))
+    pictures = [
+        output for cell in notebook.cells for output in cell.get("outputs", []) if "image/png" in output.get("data", {})
+    ]
+    assert len(pictures) == sum("\nfigure" in cell.source for cell in notebook.cells if cell.cell_type == "code") > 0
     for word in ("consistent", "clock_offset", "datum_step", "unit_scale", "time_zone"):
         assert word in shown

@@ -86,8 +86,8 @@ def test_fingerprints_tell_a_clock_from_a_unit(measure: NetworkMeasure, axes: Ax
     assert (late.gauge, feet.gauge) == ("g2", "g5")
     (minutes,) = re.findall(r"clock ([+-][\d.]+) min", texts(draw_phase_fingerprint(late, axes)))
     assert_allclose(float(minutes), 12.0, atol=PLACE_MIN)
-    assert "gain of 1" in texts(draw_gain_fingerprint(late, Figure().subplots()))
-    assert "gain of 3.28" in texts(draw_gain_fingerprint(feet, Figure().subplots()))
+    assert "gain 1" in texts(draw_gain_fingerprint(late, Figure().subplots()))
+    assert "gain 3.28" in texts(draw_gain_fingerprint(feet, Figure().subplots()))
 
 
 def test_a_step_is_drawn_at_its_day_and_size(axes: Axes) -> None:

@@ -37,7 +37,7 @@ def draw_phase_fingerprint(print_: Fingerprint, axes: Axes) -> Axes:
     )
     _label_points(print_, expected + left, axes)
     size = f"{60 * clock:+.1f} min" if abs(clock) < 0.4 else f"{clock:+.2f} h"
-    title = f"Phase: the line is a clock {size} off" + (", upside down" if print_.inverted else "")
+    title = f"{print_.gauge}: clock {size} (line)" + (", upside down" if print_.inverted else "")
     return finish(axes, title=title, x="speed [deg/h]", y="phase residual [deg]")
 
 
@@ -51,7 +51,7 @@ def draw_gain_fingerprint(print_: Fingerprint, axes: Axes) -> Axes:
     _label_points(print_, print_.amplitude_ratio, axes)
     axes.set_xlim(0.0, 1.08 * float(print_.speeds_deg_per_h.max()))
     axes.set_ylim(0.0, 1.25 * max(1.2, float(print_.amplitude_ratio.max())))
-    title = f"Amplitude: the line is a gain of {gain:.3g}"
+    title = f"{print_.gauge}: gain {gain:.3g} (line)"
     return finish(axes, title=title, x="speed [deg/h]", y="amplitude ratio")
 
 

@@ -29,7 +29,7 @@ def figure(picture: str, caption: str) -> str:
 
 
 def folded(summary: str, content: str) -> str:
-    """Content that opens on a click or a key, and stands open in print where the browser can."""
+    """Content that opens on a click or a key; in print it is as one left it."""
     return f"<details><summary>{escape(summary)}</summary>{content}</details>"
 
 

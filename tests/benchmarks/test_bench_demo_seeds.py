@@ -12,8 +12,8 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from tidekit.demo.coast import GAUGES
-from tidekit.demo.series import gauge_truth, true_speed_m_per_s
+from tidekit.demo.coast import GAUGES, wave
+from tidekit.demo.series import gauge_truth
 from tidekit.demo.write import write_demo
 from tidekit.harmonic.analysis import analyse_record
 from tidekit.network.gauges import GaugeTide
@@ -66,7 +66,7 @@ def audit_seed(seed: int) -> Outcome:
         errors={(f.gauge, f.kind): f for f in findings if f.severity == "error"},
         others=tuple(f for f in findings if f.severity != "error"),
         verdict=measure.propagation.verdict.word,
-        speed_inside=low < true_speed_m_per_s() < high,
+        speed_inside=low < wave().speed_m_per_s < high,
     )
 
 

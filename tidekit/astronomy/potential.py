@@ -14,6 +14,7 @@ import numpy as np
 from numpy.typing import NDArray
 
 from tidekit.errors import TidekitError
+from tidekit.frozen import freeze_arrays
 
 COLUMNS = ("degree", "tau", "s", "h", "p", "n_prime", "p_s", "amplitude_m", "drift_m_per_century")
 
@@ -36,6 +37,9 @@ class PotentialLines:
     """Its rate. [m per Julian century]"""
     epoch_centuries: float
     """Epoch of the amplitudes. [Julian centuries since J2000.0]"""
+
+    def __post_init__(self) -> None:
+        freeze_arrays(self)
 
 
 def amplitude_m(lines: PotentialLines, centuries: float) -> NDArray[np.float64]:
@@ -67,8 +71,6 @@ def potential_lines() -> PotentialLines:
     epoch = next(line for line in comments if line.startswith("# epoch_centuries:"))
     numbers = np.array([[int(row[column]) for column in COLUMNS[:7]] for row in rows])
     heights = np.array([[float(row[column]) for column in COLUMNS[7:]] for row in rows])
-    for array in (numbers, heights):
-        array.flags.writeable = False
     return PotentialLines(
         degree=numbers[:, 0],
         doodson=numbers[:, 1:],

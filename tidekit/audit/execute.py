@@ -19,13 +19,13 @@ from tidekit.constituents.constants_table import read_constants
 from tidekit.datums.observed import observed_datums
 from tidekit.datums.predicted import predicted_datums
 from tidekit.datums.table import DatumTable
-from tidekit.errors import AnalysisError, InputError, RecordError
+from tidekit.errors import AnalysisError, InputError, UnfitRecordError
 from tidekit.files import sha256_of
 from tidekit.harmonic.analysis import analyse_record
 from tidekit.network.gauges import GaugeTide
 from tidekit.network.measure import NetworkMeasure, measure_network
 from tidekit.quality.findings import Finding, by_gravity
-from tidekit.quality.record_findings import record_findings
+from tidekit.quality.record_findings import coverage_finding, record_findings
 from tidekit.records.network import AuditSettings, GaugeEntry, Network
 from tidekit.records.record import GaugeRecord, SourceFile
 from tidekit.records.source import open_gauge
@@ -33,8 +33,8 @@ from tidekit.records.source import open_gauge
 Progress = Callable[[str], None]
 
 _MOST_AT_ONCE = 4
-"""Gauges audited at the same time, by threads: matrix products leave the interpreter free (10 gauges on two cores took
-10.8 s rather than 16.0). More would only crowd the linear algebra's own threads and the memory."""
+"""Gauges audited at the same time, by threads: matrix products leave the interpreter free. More would only
+crowd the linear algebra's own threads and the memory."""
 
 
 def run_audit(network: Network, *, progress: Progress = lambda _: None) -> Audit:
@@ -105,9 +105,7 @@ def measure_gauges(network: Network) -> NetworkMeasure:
     for entry in network.gauges:
         try:
             tides.append(_gauge_tide(entry, network.settings))
-        except RecordError as error:
-            if entry.files and not isinstance(error.__cause__, AnalysisError):
-                raise
+        except UnfitRecordError as error:
             reasons.append(f"{entry.station.id}: {error}")
     if not tides:
         message = f"no gauge of this network can be analysed ({'; '.join(reasons)})"
@@ -147,8 +145,8 @@ def audit_gauge(entry: GaugeEntry, settings: AuditSettings) -> GaugeAudit:
     gauge = record.station.id
     try:
         fit = analyse_record(record, constituents=settings.constituents, nodal=settings.nodal)
-    except RecordError as error:
-        finding = _coverage(gauge, 0.0, "error", f"the record cannot be analysed: {error}")
+    except UnfitRecordError as error:
+        finding = coverage_finding(gauge, 0.0, "error", f"the record cannot be analysed: {error}")
         return GaugeAudit(
             entry=entry, station=record.station, record=record, fit=None, constants=None, datums=(), findings=(finding,)
         )
@@ -174,19 +172,8 @@ def _datums(
         try:
             tables.append(make())
         except AnalysisError as error:
-            notes.append(_coverage(gauge, float("nan"), "note", f"a table of datums is missing: {error}"))
+            notes.append(coverage_finding(gauge, float("nan"), "note", f"a table of datums is missing: {error}"))
     return tuple(tables), tuple(notes)
-
-
-def _coverage(gauge: str, value: float, severity: str, evidence: str) -> Finding:
-    return Finding(
-        gauge=gauge,
-        kind="coverage",
-        value=value,
-        value_sd=float("nan"),
-        severity="error" if severity == "error" else "note",
-        evidence=evidence,
-    )
 
 
 def _inputs(network: Network, gauges: list[GaugeAudit]) -> tuple[SourceFile, ...]:

@@ -17,6 +17,7 @@ from tidekit.cli.periods import (
     local_times,
     parse_step_h,
     period_of,
+    prediction_document,
     zone_of,
 )
 from tidekit.errors import InputError
@@ -55,17 +56,7 @@ def run(options: argparse.Namespace) -> int:
     if options.out:
         write_table(frame, options.out)
     if options.json:
-        print_json(
-            {
-                "constants": options.constants,
-                "gauge": options.gauge,
-                "vertical_reference": constants.vertical_reference,
-                "time_zone": options.time_zone,
-                "nodal": constants.nodal,
-                "heights": frame,
-                "caution": CAUTION,
-            }
-        )
+        print_json({**prediction_document(constants, options), "heights": frame})
         return EXIT_DONE
     if options.out:
         print(f"{count} heights in {options.out}")

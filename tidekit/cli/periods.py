@@ -12,6 +12,7 @@ import pandas as pd
 from numpy.typing import NDArray
 
 from tidekit.astronomy.timescales import datetime64_from_hours
+from tidekit.cli.main import CAUTION
 from tidekit.constituents.constants import HarmonicConstants
 from tidekit.constituents.constants_table import read_constants
 from tidekit.errors import InputError, RecordError
@@ -171,3 +172,15 @@ def heading(what: str, constants: HarmonicConstants, zone_name: str) -> str:
     """One line on what a printed prediction shows."""
     above = constants.vertical_reference or "the table's zero"
     return f"{what}, metres above {above}, times in {zone_name}, nodal convention {constants.nodal}"
+
+
+def prediction_document(constants: HarmonicConstants, options: argparse.Namespace) -> dict[str, object]:
+    """What the JSON of every prediction says of its constants."""
+    return {
+        "constants": options.constants,
+        "gauge": options.gauge,
+        "vertical_reference": constants.vertical_reference,
+        "time_zone": options.time_zone,
+        "nodal": constants.nodal,
+        "caution": CAUTION,
+    }

@@ -8,7 +8,15 @@ import pandas as pd
 
 from tidekit.cli.main import CAUTION, EXIT_DONE
 from tidekit.cli.output import add_output_options, print_json, write_table
-from tidekit.cli.periods import add_prediction_options, constants_of, heading, iso_times, period_of, zone_of
+from tidekit.cli.periods import (
+    add_prediction_options,
+    constants_of,
+    heading,
+    iso_times,
+    period_of,
+    prediction_document,
+    zone_of,
+)
 from tidekit.prediction.tide_table import tide_table
 
 _KINDS = "HH higher and H lower high water of the tidal day, LL lower and L higher low water"
@@ -38,17 +46,7 @@ def run(options: argparse.Namespace) -> int:
     if options.out:
         write_table(frame, options.out)
     if options.json:
-        print_json(
-            {
-                "constants": options.constants,
-                "gauge": options.gauge,
-                "vertical_reference": constants.vertical_reference,
-                "time_zone": options.time_zone,
-                "nodal": constants.nodal,
-                "waters": frame,
-                "caution": CAUTION,
-            }
-        )
+        print_json({**prediction_document(constants, options), "waters": frame})
         return EXIT_DONE
     if options.out:
         print(f"{len(frame)} waters in {options.out}")

@@ -12,6 +12,7 @@ from numpy.typing import NDArray
 
 from tidekit.constituents.catalogue import speeds_deg_per_h
 from tidekit.errors import ConstituentError
+from tidekit.frozen import freeze_arrays
 
 NodalConvention = Literal["exact", "mid_year"]
 """How nodal modulation was applied: exactly in time, or held at its mid-year value."""
@@ -43,14 +44,10 @@ class HarmonicConstants:
     """What the mean level is measured from."""
 
     def __post_init__(self) -> None:
+        freeze_arrays(self)
         count = len(self.names)
         for field in fields(self):
             value = getattr(self, field.name)
-            if isinstance(value, np.ndarray):
-                copy = np.array(value, dtype=np.float64)
-                copy.flags.writeable = False
-                object.__setattr__(self, field.name, copy)
-                value = copy
             if isinstance(value, (np.ndarray, tuple)) and len(value) != count:
                 message = f"{field.name} has {len(value)} entries for {count} constituents"
                 raise ConstituentError(message)

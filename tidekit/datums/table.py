@@ -3,13 +3,14 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field, fields
+from dataclasses import dataclass, field
 
 import numpy as np
 import pandas as pd
 from numpy.typing import NDArray
 
 from tidekit.errors import AnalysisError
+from tidekit.frozen import freeze_arrays
 
 RANGES = ("GT", "MN", "DHQ", "DLQ")
 """Rows of a table that are differences between levels, not levels: great diurnal range, mean range, and the
@@ -44,15 +45,11 @@ class DatumTable:
     """What the user should know before relying on them."""
 
     def __post_init__(self) -> None:
-        for entry in fields(self):
-            value = getattr(self, entry.name)
-            if isinstance(value, np.ndarray):
-                copy = np.array(value, dtype=np.float64)
-                copy.flags.writeable = False
-                object.__setattr__(self, entry.name, copy)
-                value = copy
-            if entry.name in ("height_m", "height_sd_m", "methods") and len(value) != len(self.names):
-                message = f"{entry.name} has {len(value)} entries for {len(self.names)} datums"
+        freeze_arrays(self)
+        for name in ("height_m", "height_sd_m", "methods"):
+            count = len(getattr(self, name))
+            if count != len(self.names):
+                message = f"{name} has {count} entries for {len(self.names)} datums"
                 raise AnalysisError(message)
 
     def height(self, name: str) -> float:

@@ -9,7 +9,7 @@ import scipy.signal
 from numpy.typing import NDArray
 
 from tidekit.astronomy.timescales import hours_from_datetime64
-from tidekit.demo.coast import GAUGES, DemoGauge, true_constants, wave
+from tidekit.demo.coast import GAUGES, DemoGauge, true_constants
 from tidekit.prediction.heights import predict_heights
 
 Float = NDArray[np.float64]
@@ -91,8 +91,3 @@ def gauge_truth(gauge: DemoGauge) -> list[tuple[str, float]]:
         "datum_step": gauge.step_m,
     }
     return [(kind, size) for kind, size in sizes.items() if size]
-
-
-def true_speed_m_per_s() -> float:
-    """Speed of the wave that made the tides. [m/s]"""
-    return wave().speed_m_per_s

@@ -19,9 +19,9 @@ LEVEL = 0.95
 
 MODULATION = {0: 0.0, 1: 0.005, 2: 0.01}
 """Relative standard deviation, of either part of a phasor, by which weather and seasons vary a constituent within
-the year, by species. Of ten gauges' months, M2 varied by 0.7 % (median; 1.4 % rms), diurnal ones by less than 0.7 %."""
+the year, by species (common practice, no source)."""
 MODULATION_SHALLOW = 0.1
-"""The same for higher species, which shallow water makes: M4 varied by 13 % (median)."""
+"""The same for higher species, which shallow water makes (common practice, no source)."""
 _MODULATION_MEMORY_H = 48.0 * 24.0
 """Its correlation time: a cusp that halves within a cycle a year or two. [h]"""
 _SEEN_AFTER_H = 2.0 * 8766.0

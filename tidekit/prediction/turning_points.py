@@ -3,8 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass, fields
-from typing import Any
+from dataclasses import dataclass
 
 import numpy as np
 import pandas as pd
@@ -13,6 +12,7 @@ from numpy.typing import NDArray
 from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.constituents.constants import HarmonicConstants
 from tidekit.errors import AnalysisError
+from tidekit.frozen import freeze_arrays
 from tidekit.prediction.blocks import PhasorBlocks, equal_blocks
 
 _Array = NDArray[np.float64]
@@ -40,10 +40,7 @@ class TurningPoints:
     """True at a high water, False at a low water."""
 
     def __post_init__(self) -> None:
-        for field in fields(self):
-            copy: NDArray[Any] = np.array(getattr(self, field.name))
-            copy.flags.writeable = False
-            object.__setattr__(self, field.name, copy)
+        freeze_arrays(self)
 
     def __len__(self) -> int:
         return len(self.t_h)

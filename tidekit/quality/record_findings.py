@@ -9,7 +9,7 @@ import numpy as np
 from tidekit.astronomy.timescales import datetime64_from_hours
 from tidekit.harmonic.results import HarmonicFit
 from tidekit.quality.daily import against_neighbours, daily_levels
-from tidekit.quality.findings import Finding
+from tidekit.quality.findings import Finding, Severity
 from tidekit.quality.jumps import find_jumps
 from tidekit.quality.slips import daily_lateness, find_drift, find_slips
 from tidekit.quality.steps import CRITICAL_T, Step, find_steps
@@ -118,28 +118,24 @@ def coverage_findings(gauge: str, record: GaugeRecord, settings: AuditSettings) 
     times = record.times_h
     if len(times) < 2:
         evidence = f"{len(times)} usable samples: nothing to analyse"
-        return [_coverage(gauge, 0.0, "error", evidence)]
+        return [coverage_finding(gauge, 0.0, "error", evidence)]
     days = (times[-1] - times[0] + record.step_h) / 24.0
     share = float(min(len(times) * record.step_h / (24.0 * days), 1.0))
     if days < settings.minimum_days:
         evidence = f"the record spans {days:.1f} days; {settings.minimum_days:g} are wanted for an audit"
-        return [_coverage(gauge, share, "warning", evidence)]
+        return [coverage_finding(gauge, share, "warning", evidence)]
     if share < _LEAST_COVERAGE:
         evidence = (
             f"{100 * share:.0f} % of the samples of {days:.0f} days are there; {100 * _LEAST_COVERAGE:.0f} % are wanted"
         )
-        return [_coverage(gauge, share, "warning", evidence)]
+        return [coverage_finding(gauge, share, "warning", evidence)]
     return []
 
 
-def _coverage(gauge: str, share: float, severity: str, evidence: str) -> Finding:
+def coverage_finding(gauge: str, share: float, severity: Severity, evidence: str) -> Finding:
+    """A `coverage` finding: the share of samples that are there, NaN where it is not about samples."""
     return Finding(
-        gauge=gauge,
-        kind="coverage",
-        value=share,
-        value_sd=float("nan"),
-        severity="error" if severity == "error" else "warning",
-        evidence=evidence,
+        gauge=gauge, kind="coverage", value=share, value_sd=float("nan"), severity=severity, evidence=evidence
     )
 
 

@@ -7,7 +7,7 @@ spike; ranges and flat spells on the heights.
 from __future__ import annotations
 
 from collections.abc import Mapping
-from dataclasses import dataclass, field
+from dataclasses import dataclass, field, replace
 
 import numpy as np
 import pandas as pd
@@ -107,15 +107,7 @@ class Screening:
 
     def screened(self) -> GaugeRecord:
         """The record with these flags; failed samples no longer enter an analysis."""
-        record = self.record
-        return GaugeRecord(
-            station=record.station,
-            heights=record.heights,
-            flags=pd.Series(self.flags, index=record.heights.index, name="flag"),
-            ledger=record.ledger,
-            sources=record.sources,
-            layout_name=record.layout_name,
-        )
+        return replace(self.record, flags=pd.Series(self.flags, index=self.record.heights.index, name="flag"))
 
 
 def screen(record: GaugeRecord, *, thresholds: Thresholds | None = None) -> Screening:
@@ -155,10 +147,9 @@ def _run(t_h: Float, height_m: Float, residual: Float, limits: Thresholds) -> di
     """Run the tests that a single gauge's heights allow, by the manual's names."""
     # Neighbours in the array must be neighbours in time for a spike or a rate: beyond a gap they are unknown.
     apart = np.diff(t_h, prepend=t_h[0]) > limits.longest_gap_h
-    near = residual.copy()
     gap_at = np.flatnonzero(apart)
     spaced_t = np.insert(t_h, gap_at, t_h[gap_at] - 1e-6)
-    spaced = np.insert(near, gap_at, np.nan)
+    spaced = np.insert(residual, gap_at, np.nan)
     real = np.ones(len(spaced), dtype=np.bool_)
     real[gap_at + np.arange(len(gap_at))] = False
     sd = trailing_sd(spaced_t, np.diff(spaced, prepend=np.nan), span_h=25.0)

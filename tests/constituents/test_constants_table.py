@@ -3,11 +3,12 @@
 from pathlib import Path
 
 import numpy as np
+import pandas as pd
 import pytest
 from numpy.testing import assert_allclose
 
 from tidekit.constituents.constants import HarmonicConstants
-from tidekit.constituents.constants_table import read_constants, write_constants
+from tidekit.constituents.constants_table import COLUMNS, read_constants, write_constants
 from tidekit.errors import ConstituentError, InputError
 
 ROUND_TRIP = 1e-12  # CSV writes the shortest text that reads back to the same double; Z0 takes a cosine
@@ -31,6 +32,9 @@ def test_constants_read_back(tmp_path: Path) -> None:
     path = tmp_path / "constants.csv"
     write_constants(constants(), path, gauge="a")
     back = read_constants(path)
+    table = pd.read_csv(path, keep_default_na=False)
+    assert tuple(table.columns) == COLUMNS
+    assert table["makeup"].tolist() == ["", "", "", "2*M2 + S2"]
     assert (back.names, back.basis, back.nodal) == (constants().names, constants().basis, "exact")
     assert back.vertical_reference == "staff zero, 2019"
     assert_allclose(back.phasors_m, constants().phasors_m, rtol=ROUND_TRIP)

@@ -48,8 +48,8 @@ class Constituent:
 
     @property
     def makeup(self) -> str:
-        """The compound's sum, or the name of a line."""
-        return format_makeup(self.parts) if self.parts else self.name
+        """The compound's sum; empty for a line."""
+        return format_makeup(self.parts)
 
     @cached_property
     def speed_deg_per_h(self) -> float:

@@ -25,6 +25,7 @@ COLUMNS = (
     "phase_lag_deg",
     "phase_lag_sd_deg",
     "basis",
+    "makeup",
     "nodal",
     "vertical_reference",
 )
@@ -63,6 +64,7 @@ def constants_frame(constants: HarmonicConstants, gauge: str) -> pd.DataFrame:
     )
     frame = pd.concat([level, constants.to_frame()], ignore_index=True)
     frame.insert(0, "gauge", gauge)
+    frame["makeup"] = ["", *(resolve(name).makeup for name in constants.names)]
     return frame.assign(nodal=constants.nodal, vertical_reference=constants.vertical_reference or "")
 
 
